@@ -38,6 +38,8 @@ type Animal struct {
 	// says in words what they were taken for (a subspecies that has no row,
 	// a former name). It is to be printed.
 	MatchedAs string
+
+	measured *Measured // nil if unmeasured, or not made by Find
 }
 
 // Genus returns the first word of the scientific name.

@@ -2,49 +2,6 @@ package species
 
 import "tayra/metabolic"
 
-// NotFoundError says that no row of the animal table has the name.
-type NotFoundError struct {
-	Words string
-	Near  []string // the nearest names, at most five
-}
-
-func (e *NotFoundError) Error() string { return "no animal " + e.Words }
-
-// AmbiguousError says that the words fit several animals.
-type AmbiguousError struct {
-	Words string
-	Names []string // "common name (Scientific name)"
-}
-
-func (e *AmbiguousError) Error() string { return e.Words + " is ambiguous" }
-
-// NameError says that the words contain letters that no name has.
-type NameError struct{ Words, Problem string }
-
-func (e *NameError) Error() string { return e.Problem }
-
-// UnavailableError says that an animal has no such basis of metabolic rate.
-type UnavailableError struct{ Basis, Why string }
-
-func (e *UnavailableError) Error() string { return e.Basis + ": " + e.Why }
-
-func Find(words string) (*Animal, error) { return nil, &NotFoundError{Words: words} }
-func All() []*Animal                     { return nil }
-func Search(words string) []*Animal      { return nil }
-func SameSpecies(a, b *Animal) bool      { return a.SpeciesWords() == b.SpeciesWords() }
-func Kinship(a, b *Animal) string        { return "" }
-
-type Measured struct {
-	Mass              metabolic.Mass
-	Rate              metabolic.Power
-	Temperature       metabolic.Celsius
-	HasTemperature    bool
-	Kind, Grade, Flag string // BMR or SMR; accepted, listed, ungraded, not basal; "", young, torpid, doubtful
-	Source, Notes     string
-}
-
-func MeasuredRate(a *Animal) (*Measured, bool) { return nil, false }
-
 type Prediction struct {
 	Rate   metabolic.Power
 	SDln   float64
@@ -66,8 +23,6 @@ type Scatter struct {
 }
 
 func ScatterOf(basis, id, group string) Scatter { return Scatter{SDln: 0.5, Assumed: true} }
-
-func Sources(id string) (citation string, ok bool) { return "", false }
 
 type Hazard struct {
 	ID, Drug, DrugClass, Rank, Taxon, Route string

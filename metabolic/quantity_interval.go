@@ -66,6 +66,9 @@ func ParseInterval(s string) (Interval, error) {
 	} else if after, ok := strings.CutPrefix(body, "q"); ok {
 		body = strings.TrimPrefix(after, " ")
 	}
+	if _, _, problem := t.number(body); problem != nil {
+		return Interval{}, problem
+	}
 	t.body = body
 	_, _, isRange, problem := t.splitRange()
 	if problem != nil {

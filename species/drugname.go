@@ -1,0 +1,272 @@
+// How a drug's name is read for the hazard table: by the names that the
+// table's own lists know, salts and forms of preparation let off, both halves
+// of a combination, the ending of an international nonproprietary name, and
+// last by near spelling. It only ever adds a hazard to be looked at; it never
+// decides what a drug is.
+
+package species
+
+import (
+	_ "embed"
+	"math/bits"
+	"slices"
+	"strings"
+	"sync"
+
+	"tayra/species/internal/fold"
+)
+
+//go:embed data/drugs.index
+var drugsIndex string
+
+//go:embed data/drug-classes.index
+var drugClassesIndex string
+
+//go:embed data/drug-stems.csv
+var drugStemsTable string
+
+// how a drug or class came to be read, the surest first.
+type certainty uint8
+
+const (
+	byName certainty = iota
+	bySynonym
+	byClass
+	byEnding
+	bySpelling
+	unread
+)
+
+// reading is one drug or class that a name was read as.
+type reading struct {
+	drug, class string // one of them
+	how         certainty
+	via         string // as HazardMatch.Via
+	meant       string // bySpelling: the name that it is near to
+}
+
+// readDrug reads the drug and the class of a case.
+func readDrug(drug, class string) []reading {
+	var out []reading
+	for _, text := range []string{drug, class} {
+		tokens := fold.Tokens(text)
+		for len(tokens) > 0 {
+			part := tokens
+			if end := slices.Index(tokens, fold.Boundary); end >= 0 {
+				part, tokens = tokens[:end], tokens[end+1:]
+			} else {
+				tokens = nil
+			}
+			out = readPart(out, part)
+		}
+	}
+	return out
+}
+
+// readPart reads one half of a combination. The longest run of words that is
+// a known name is taken first, so that "sodium phosphate" in "dexamethasone
+// sodium phosphate" is no drug and "benzyl alcohol" no alcohol.
+func readPart(out []reading, words []string) []reading {
+	var unknown []string
+	alone := slices.DeleteFunc(slices.Clone(words), func(w string) bool { return preparation[w] })
+	for i := 0; i < len(words); {
+		n := min(5, len(words)-i)
+		for ; n > 0; n-- {
+			key := strings.Join(words[i:i+n], "")
+			if l, ok := lookUp(drugsIndex, key); ok {
+				e := parseDrug(l)
+				if e.whole && strings.Join(alone, "") != key {
+					continue
+				}
+				out = e.readings(out, key)
+				// A word may be the name of a class as well ("penicillin").
+				if l, ok := lookUp(drugClassesIndex, key); ok {
+					out = classReadings(out, l)
+				}
+				break
+			}
+			if l, ok := lookUp(drugClassesIndex, key); ok {
+				out = classReadings(out, l)
+				break
+			}
+		}
+		if n > 0 {
+			i += n
+			continue
+		}
+		if w := words[i]; !preparation[w] && !salt[w] && !isNumber(w) {
+			out = endingReadings(out, w)
+			unknown = append(unknown, w)
+		}
+		i++
+	}
+	for _, w := range unknown[:min(len(unknown), 16)] {
+		out = near1(out, w)
+	}
+	if len(unknown) > 1 && len(unknown) <= 3 {
+		out = near1(out, strings.Join(unknown, ""))
+	}
+	return out
+}
+
+// lookUp finds a key, a plural s let off.
+func lookUp(index, key string) (string, bool) {
+	l, ok := line(index, key)
+	if !ok && len(key) > 4 && strings.HasSuffix(key, "s") {
+		l, ok = line(index, key[:len(key)-1])
+	}
+	return l, ok
+}
+
+type drugLine struct {
+	key, written string
+	whole        bool
+	drugs        []string
+	classes      []string
+	hazard       bool
+}
+
+func parseDrug(l string) drugLine {
+	c := strings.Split(l, "\t")
+	return drugLine{key: c[0], written: c[1], whole: c[2] == "whole", drugs: strings.Split(c[3], ";"), classes: strings.Split(c[4], ";"), hazard: c[5] != ""}
+}
+
+func (e drugLine) readings(out []reading, key string) []reading {
+	for _, d := range e.drugs {
+		r := reading{drug: d, how: byName, via: "drug name"}
+		if d != e.written && len(e.drugs) == 1 {
+			r.how, r.via = bySynonym, "synonym "+e.written
+		}
+		out = append(out, r)
+	}
+	for _, c := range e.classes {
+		out = append(out, reading{class: c, how: byClass, via: "class " + c})
+	}
+	return out
+}
+
+func classReadings(out []reading, l string) []reading {
+	c := strings.Split(l, "\t")
+	for _, class := range strings.Split(c[2], ";") {
+		out = append(out, reading{class: class, how: byClass, via: "class " + class})
+	}
+	return out
+}
+
+// endingReadings reads the class from the ending that such a class's
+// international nonproprietary names share.
+func endingReadings(out []reading, word string) []reading {
+	for r := range records(drugStemsTable) {
+		if ending := r[0]; len(word) > len(ending)+1 && strings.HasSuffix(word, ending) {
+			out = append(out, reading{class: r[1], how: byEnding, via: "class " + r[1] + ", by the ending -" + ending})
+		}
+	}
+	return out
+}
+
+// nearName is a name that a slip of the pen may have meant.
+type nearName struct {
+	key     string
+	letters uint32 // one bit a letter
+	line    string
+	class   bool
+}
+
+// nearNames are the names of drugs and classes that the hazard table is about.
+var nearNames = sync.OnceValue(func() []nearName {
+	var out []nearName
+	for i, index := range []string{drugsIndex, drugClassesIndex} {
+		for l := range lines(index) {
+			key, _, _ := strings.Cut(l, "\t")
+			if strings.HasSuffix(l, "\thazard") && len(key) >= 5 {
+				out = append(out, nearName{key, letters(key), l, i == 1})
+			}
+		}
+	}
+	return out
+})
+
+// near1 adds what a word is within one slip of (under eight letters) or two.
+func near1(out []reading, word string) []reading {
+	if len(word) < 5 || len(word) > fold.MaxBytes {
+		return out
+	}
+	limit := 1
+	if len(word) >= 8 {
+		limit = 2
+	}
+	mask := letters(word)
+	var hits []nearName
+	for _, n := range nearNames() {
+		// A slip changes two letters of the alphabet at most.
+		if bits.OnesCount32(mask^n.letters) > 2*limit {
+			continue
+		}
+		switch d := editDistance(word, n.key, limit); {
+		case d < limit:
+			limit, hits = d, append(hits[:0], n)
+		case d == limit:
+			hits = append(hits, n)
+		}
+	}
+	for _, n := range hits {
+		var read []reading
+		var written string
+		if n.class {
+			read = classReadings(nil, n.line)
+			written = strings.Split(n.line, "\t")[1]
+		} else {
+			e := parseDrug(n.line)
+			read, written = e.readings(nil, n.key), e.written
+		}
+		for _, r := range read {
+			r.how, r.via, r.meant = bySpelling, "near spelling", written
+			out = append(out, r)
+		}
+	}
+	return out
+}
+
+// letters has a bit for each letter of the alphabet in a word, and one for
+// the digits.
+func letters(word string) uint32 {
+	var mask uint32
+	for i := 0; i < len(word); i++ {
+		if c := word[i]; c >= 'a' {
+			mask |= 1 << (c - 'a')
+		} else {
+			mask |= 1 << 26
+		}
+	}
+	return mask
+}
+
+func isNumber(w string) bool { return w[0] >= '0' && w[0] <= '9' }
+
+func setOf(words string) map[string]bool {
+	out := make(map[string]bool)
+	for _, w := range strings.Fields(words) {
+		out[w] = true
+	}
+	return out
+}
+
+// salt and preparation are words that stand beside a drug's name and are not
+// themselves looked for: counter-ions and esters, and forms of preparation.
+var (
+	salt = setOf(`sodium potassium calcium magnesium zinc ammonium lithium disodium dipotassium
+		hydrochloride dihydrochloride hcl hydrobromide hbr hydriodide hydrate monohydrate dihydrate trihydrate hemihydrate
+		pentahydrate hyclate anhydrous acetate diacetate phosphate diphosphate succinate hemisuccinate tartrate bitartrate
+		citrate lactate maleate fumarate malate oxalate mesylate mesilate besylate besilate tosylate tosilate edisylate
+		esylate napsylate meglumine lysine lysinate arginine benzathine axetil pivoxil proxetil palmitate stearate estolate
+		ethylsuccinate sulfate sulphate bisulfate nitrate mononitrate gluconate digluconate glucuronate lactobionate pamoate
+		embonate decanoate propionate dipropionate valerate acetonide furoate cypionate cipionate enanthate isethionate
+		isonicotinate trometamol tromethamine bromide chloride iodide benzoate salicylate base salt ester acid hydroxide
+		oxide carbonate undecylenate phenylpropionate methylsulfate metilsulfate aceponate pivalate caproate`)
+	preparation = setOf(`injection injectable inj solution sol suspension susp tablet tablets tab tabs capsule capsules cap caps
+		oral paste gel cream ointment powder feed premix medicated pour spot spoton on drops drop spray liquid syrup elixir bolus
+		la long acting longacting depot slow sustained extended release sr er xr xl concentrate generic compounded human
+		veterinary vet for in of the a an use mg ml g kg mcg iu units percent per dose strength drug agent enema hypertonic sterile
+		aqueous water soluble topical ophthalmic otic eye ear intramammary implant granules chewable chew collar dip shampoo
+		wormer drench invented sample test animal horse horses cattle dog dogs cat cats`)
+)

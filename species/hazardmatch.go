@@ -1,0 +1,228 @@
+package species
+
+import (
+	"slices"
+	"strings"
+	"sync"
+)
+
+// HazardMatch is a hazard that concerns a patient and a drug, and how it
+// came to be found.
+type HazardMatch struct {
+	Hazard
+	// Relation is "direct" (the row's drug or class, and the row's animals)
+	// or "relative" (one step aside, see RelativeRank). Operator rows are
+	// direct for every patient and carry Operator.
+	Relation string
+	// RelativeRank of a relative match: "family" or "order" (the row's drug,
+	// known in another animal of that), or "drug class" (the row's animals,
+	// known for another drug of the class,
+	// and nothing in the table about this one).
+	RelativeRank string
+	// Via is "drug name", "synonym X", "class X", "class X, by the ending -y",
+	// or "near spelling": then the name is not known and may be meant for
+	// Meant, and the match is a question.
+	Via   string
+	Meant string
+}
+
+// MatchHazards returns the hazards that concern a drug in an animal, worst
+// first: contraindicated, reduced margin, caution; direct before relative;
+// then by id.
+//
+// The drug is matched by name, by synonym and spelling of other
+// pharmacopoeias, without its salt, in each half of a combination; its class
+// by the class given and by the class that the drug is known to have,
+// whatever was given. An unknown name within two slips of one that the table
+// is about matches as "near spelling".
+//
+// A row concerns the animal at its own rank (species, wild and domestic forms
+// being one, genus, family, order, class, or any). A row about a species,
+// genus or family concerns others of the family, and one about a genus or
+// family others of the order, as "relative"; so do rows about another drug of
+// the class in the animal itself. Rows of law on residues and rows about a
+// breed's gene concern nobody's relatives. Operator rows concern every
+// patient. A route that is missing or not understood rules nothing out.
+//
+// No match says nothing: see HazardCoverage.
+func MatchHazards(drug, class string, a *Animal, route string) []HazardMatch {
+	found := candidatesOf(drug, class)
+	if len(found) == 0 {
+		return nil
+	}
+	if a == nil {
+		a = &Animal{}
+	}
+	var out []HazardMatch
+	given := readRoute(route)
+	rows := hazards().rows
+	for _, c := range found {
+		h := &rows[c.row]
+		if !given.admits(h.Route) {
+			continue
+		}
+		relation, rank := relationOf(h, a)
+		if c.sister {
+			if relation != "direct" || h.Regulatory || h.Operator {
+				continue
+			}
+			relation, rank = "relative", "drug class"
+		}
+		m := HazardMatch{Hazard: *h, Relation: relation, RelativeRank: rank, Via: c.via, Meant: c.meant}
+		if h.operatorToo && relation != "direct" {
+			if c.sister {
+				continue
+			}
+			m.Relation, m.RelativeRank, m.Operator = "direct", "", true
+		}
+		if m.Relation != "" {
+			out = append(out, m)
+		}
+	}
+	out = dropSisters(out)
+	slices.SortStableFunc(out, func(x, y HazardMatch) int {
+		if c := severityRank(x.Severity) - severityRank(y.Severity); c != 0 {
+			return c
+		}
+		if x.Relation != y.Relation {
+			return strings.Compare(x.Relation, y.Relation) // "direct" before "relative"
+		}
+		return strings.Compare(x.ID, y.ID)
+	})
+	return out
+}
+
+// dropSisters lets off what is known of other drugs of a class where the table
+// speaks of the drug itself in the animal itself.
+func dropSisters(matches []HazardMatch) []HazardMatch {
+	return slices.DeleteFunc(matches, func(m HazardMatch) bool {
+		return m.RelativeRank == "drug class" && slices.ContainsFunc(matches, func(own HazardMatch) bool {
+			return own.Relation == "direct" && own.Drug != "" && own.DrugClass == m.DrugClass && own.Meant == "" && !own.Operator
+		})
+	})
+}
+
+func severityRank(s string) int {
+	switch s {
+	case "contraindicated":
+		return 0
+	case "reduced margin":
+		return 1
+	}
+	return 2
+}
+
+// relationOf says how a row's animals are related to an animal: "direct",
+// "relative" with the rank they share, or "".
+func relationOf(h *Hazard, a *Animal) (relation, rank string) {
+	if h.Operator {
+		return "direct", ""
+	}
+	direct := false
+	switch h.Rank {
+	case "any":
+		direct = true
+	case "species":
+		direct = sameSpeciesWords(a.SpeciesWords(), firstTwoWords(h.Taxon))
+	case "genus":
+		direct = a.Genus() == h.Taxon
+	case "family":
+		direct = a.Family == h.Taxon
+	case "order":
+		direct = a.Order == h.Taxon
+	case "class":
+		direct = a.Class == h.Taxon
+	}
+	switch {
+	case direct:
+		return "direct", ""
+	case h.Regulatory || h.ConditionKind == "breed":
+		return "", ""
+	case h.Rank != "species" && h.Rank != "genus" && h.Rank != "family":
+		return "", ""
+	case h.family != "" && a.Family == h.family:
+		return "relative", "family"
+	case h.Rank != "species" && h.order != "" && a.Order == h.order:
+		return "relative", "order"
+	}
+	return "", ""
+}
+
+func firstTwoWords(name string) string { return (&Animal{Name: name}).SpeciesWords() }
+
+// candidate is a row that a drug's name or class leads to.
+type candidate struct {
+	row    int
+	how    certainty
+	via    string
+	meant  string
+	sister bool // the row is about another drug of the class
+}
+
+// candidates of a drug and class are kept: a batch asks for the same few
+// drugs again and again.
+var remembered struct {
+	sync.RWMutex
+	found map[[2]string][]candidate
+}
+
+const (
+	rememberAtMost  = 512 // drug names; then all are forgotten
+	rememberLongest = 256 // bytes of a name and class
+)
+
+func candidatesOf(drug, class string) []candidate {
+	key := [2]string{drug, class}
+	remembered.RLock()
+	found, ok := remembered.found[key]
+	remembered.RUnlock()
+	if ok {
+		return found
+	}
+	found = findCandidates(drug, class)
+	if len(drug)+len(class) <= rememberLongest {
+		remembered.Lock()
+		if remembered.found == nil || len(remembered.found) >= rememberAtMost {
+			remembered.found = make(map[[2]string][]candidate)
+		}
+		remembered.found[[2]string{strings.Clone(drug), strings.Clone(class)}] = found
+		remembered.Unlock()
+	}
+	return found
+}
+
+func findCandidates(drug, class string) []candidate {
+	read := readDrug(drug, class)
+	if len(read) == 0 {
+		return nil
+	}
+	b := hazards()
+	best := make(map[int]candidate)
+	put := func(rows []int, r reading, sister bool) {
+		for _, row := range rows {
+			old, ok := best[row]
+			if ok && (old.sister != sister && sister || old.sister == sister && old.how <= r.how) {
+				continue
+			}
+			best[row] = candidate{row, r.how, r.via, r.meant, sister}
+		}
+	}
+	for _, r := range read {
+		if r.drug != "" {
+			put(b.byDrug[r.drug], r, false)
+		} else {
+			put(b.byClass[r.class], r, false)
+		}
+	}
+	for _, r := range read {
+		if r.class != "" && r.how != bySpelling {
+			put(b.ofClass[r.class], r, true)
+		}
+	}
+	out := make([]candidate, 0, len(best))
+	for _, c := range best {
+		out = append(out, c)
+	}
+	slices.SortFunc(out, func(x, y candidate) int { return x.row - y.row })
+	return out
+}

@@ -1,0 +1,166 @@
+package build
+
+import (
+	"fmt"
+	"io/fs"
+	"slices"
+	"strings"
+)
+
+// Drugs makes drugs.index and drug-classes.index, by which the hazard table
+// reads the name and class of a drug.
+//
+// A line of drugs.index is, tab-separated: key, name as written, kind
+// ("drug", "name", "combination", or "whole" for a name that counts only
+// where nothing else stands beside it), the drugs, their classes (both
+// joined by semicolons), and "hazard" if a row of the hazard table is about
+// one of these. A line of drug-classes.index is: key, name, classes,
+// "hazard" or nothing.
+func Drugs(data fs.FS, out map[string][]byte) error {
+	tables := make(map[string]*table)
+	for _, name := range []string{"drug-classes.csv", "drug-synonyms.csv", "drug-class-names.csv", "hazards.csv"} {
+		t, err := read(data, name)
+		if err != nil {
+			return err
+		}
+		tables[name] = t
+	}
+
+	classes := make(map[string][]string) // by drug
+	whole := make(map[string]bool)
+	for _, r := range tables["drug-classes.csv"].rows {
+		classes[r["drug"]] = list(r["classes"])
+	}
+	canonical := make(map[string]string) // drug by key
+	synonyms := tables["drug-synonyms.csv"].rows
+	for _, r := range synonyms {
+		for _, d := range list(r["drug"]) {
+			if classes[d] == nil {
+				return fmt.Errorf("drug-synonyms.csv: %s: no drug %q in drug-classes.csv", r["name"], d)
+			}
+			if r["kind"] == "whole" {
+				whole[d] = true
+			}
+		}
+	}
+
+	hazardDrugs, hazardClasses := make(map[string]bool), make(map[string]bool)
+	entries := make(map[string][]string) // by key: written, kind, drugs
+	add := func(written, kind string, drugs ...string) error {
+		key, err := keyOf(written)
+		if err != nil {
+			return err
+		}
+		if other := entries[key]; other != nil {
+			if slices.Equal(other[2:], drugs) {
+				return nil // one key for two spellings, such as "5-FU" and "5FU"
+			}
+			return fmt.Errorf("drug name %q is there as %q too", written, other[0])
+		}
+		entries[key] = append([]string{written, kind}, drugs...)
+		if len(drugs) == 1 {
+			canonical[key] = drugs[0]
+		}
+		return nil
+	}
+	for d := range classes {
+		kind := "drug"
+		if whole[d] {
+			kind = "whole"
+		}
+		if err := add(d, kind, d); err != nil {
+			return err
+		}
+	}
+	for _, r := range synonyms {
+		if err := add(r["name"], r["kind"], list(r["drug"])...); err != nil {
+			return err
+		}
+	}
+	for _, h := range tables["hazards.csv"].rows {
+		for _, d := range append(list(h["also_drugs"]), list(h["drug"])...) {
+			key, err := keyOf(d)
+			if err != nil {
+				return err
+			}
+			if canonical[key] == "" {
+				return fmt.Errorf("hazard %s: no drug %q in drug-classes.csv or drug-synonyms.csv", h["id"], d)
+			}
+			hazardDrugs[canonical[key]] = true
+		}
+		for _, c := range append(list(h["also_classes"]), h["drug_class"]) {
+			hazardClasses[c] = true
+		}
+	}
+
+	var lines []string
+	for key, e := range entries {
+		var all []string
+		hazard := ""
+		for _, d := range e[2:] {
+			if hazardDrugs[d] {
+				hazard = "hazard"
+			}
+			for _, c := range classes[d] {
+				if hazardClasses[c] {
+					hazard = "hazard"
+				}
+				if !slices.Contains(all, c) {
+					all = append(all, c)
+				}
+			}
+		}
+		lines = append(lines, strings.Join([]string{key, e[0], e[1], strings.Join(e[2:], ";"), strings.Join(all, ";"), hazard}, "\t"))
+	}
+	out["drugs.index"] = sorted(lines)
+
+	lines = nil
+	known := make(map[string]bool)
+	seen := make(map[string]string)
+	for _, r := range tables["drug-class-names.csv"].rows {
+		key, err := keyOf(r["name"])
+		if err != nil {
+			return err
+		}
+		if seen[key] != "" {
+			if seen[key] == r["classes"] {
+				continue // one key for two spellings, such as "beta 2" and "beta-2"
+			}
+			return fmt.Errorf("class name %q is there twice", r["name"])
+		}
+		seen[key] = r["classes"]
+		hazard := ""
+		for _, c := range list(r["classes"]) {
+			known[c] = true
+			if hazardClasses[c] {
+				hazard = "hazard"
+			}
+		}
+		lines = append(lines, strings.Join([]string{key, r["name"], strings.Join(list(r["classes"]), ";"), hazard}, "\t"))
+	}
+	for c := range hazardClasses {
+		if !known[c] {
+			return fmt.Errorf("hazard class %q is not in drug-class-names.csv", c)
+		}
+	}
+	for d, cs := range classes {
+		for _, c := range cs {
+			if !known[c] {
+				return fmt.Errorf("class %q of %s is not in drug-class-names.csv", c, d)
+			}
+		}
+	}
+	out["drug-classes.index"] = sorted(lines)
+	return nil
+}
+
+// list splits a cell that holds several values.
+func list(cell string) []string {
+	var out []string
+	for _, s := range strings.Split(cell, ";") {
+		if s = strings.TrimSpace(s); s != "" {
+			out = append(out, s)
+		}
+	}
+	return out
+}

@@ -1,0 +1,273 @@
+package dose
+
+import (
+	"fmt"
+	"math"
+	"strings"
+	"sync"
+
+	"tayra/metabolic"
+	"tayra/species"
+)
+
+// Basis is where an animal's metabolic rate is taken from.
+type Basis uint8
+
+// Bases, in the order in which a worksheet shows them.
+const (
+	BasisGroup Basis = iota
+	BasisEquation
+	BasisMeasured
+	BasisRelatives
+)
+
+var basisNames = [...]string{"group", "equation", "measured", "relatives"}
+
+// String is the basis as the case file writes it.
+func (b Basis) String() string { return basisNames[b] }
+
+// Bases lists every basis in the order in which a worksheet shows them.
+func Bases() []Basis { return []Basis{BasisGroup, BasisEquation, BasisMeasured, BasisRelatives} }
+
+// measuredReach is how far from the mass at which it was measured a species'
+// own rate is carried: W0/4 to 4·W0, both included.
+const measuredReach = 4
+
+// measuredExponent carries a species' own rate to another mass. Within one
+// species the slope is nearer 0.67 (Heusner 1982 Respir Physiol 48:1-12), which
+// at the limits of measuredReach makes at most 12 % (4^0.08).
+const measuredExponent = 0.75
+
+// noBasis says why an animal has no rate on a basis.
+type noBasis struct {
+	basis Basis
+	why   string
+}
+
+func (e *noBasis) Error() string { return e.basis.String() + ": " + e.why }
+
+// rateLine is one basis made ready for one animal. It is built once for an
+// animal and then asked at many masses and temperatures.
+type rateLine struct {
+	basis    Basis
+	animal   *species.Animal
+	equation *metabolic.Equation // group and equation
+	measured *species.Measured   // measured
+	kind     string              // BMR, SMR; "resting" for a measured row that is not basal
+	scatter  species.Scatter     // group and equation: how far species lie from the line
+	fallback string              // said when the animal had no group constant and this stands in
+}
+
+// animalLines is every basis that one animal has, whatever its mass.
+type animalLines struct {
+	group     *rateLine // nil without a group constant
+	class     *rateLine // the published line for its group or class
+	measured  *rateLine // nil when unmeasured or flagged
+	flag      string    // why a measured row is not used
+	relatives bool
+}
+
+var linesOf sync.Map // scientific name → *animalLines
+
+// lines finds what is known of an animal. The result is kept: at most one
+// entry an animal of the table.
+func lines(a *species.Animal) *animalLines {
+	if l, ok := linesOf.Load(a.Name); ok {
+		return l.(*animalLines)
+	}
+	l := &animalLines{relatives: true}
+	if eq, ok := metabolic.GroupConstant(a.Group); ok {
+		l.group = equationLine(BasisGroup, eq, a)
+	}
+	if eq, ok := defaultEquation(a); ok {
+		l.class = equationLine(BasisEquation, eq, a)
+	}
+	if m, ok := species.MeasuredRate(a); ok {
+		if m.Flag != "" {
+			l.flag = m.Flag
+		} else {
+			kind := m.Kind
+			if m.Grade == "not basal" {
+				kind = "resting"
+			}
+			l.measured = &rateLine{basis: BasisMeasured, animal: a, measured: m, kind: kind}
+		}
+	}
+	actual, _ := linesOf.LoadOrStore(a.Name, l)
+	return actual.(*animalLines)
+}
+
+// defaultEquation is the default line of the animal's group. Monotremes have
+// no line of their group: one constant for the order would be wrong by a
+// factor of 2.5, so each takes its own species' line or none.
+func defaultEquation(a *species.Animal) (*metabolic.Equation, bool) {
+	if eq, ok := metabolic.DefaultEquation(a.Group); ok && eq.Applies(a.Group, a.Name) {
+		return eq, true
+	}
+	for _, eq := range metabolic.Equations() {
+		if eq.Level == "single species" && eq.Usable() && eq.Applies(a.Group, a.Name) {
+			return eq, true
+		}
+	}
+	return nil, false
+}
+
+func equationLine(b Basis, eq *metabolic.Equation, a *species.Animal) *rateLine {
+	id := ""
+	if b == BasisEquation {
+		id = eq.ID
+	}
+	return &rateLine{basis: b, animal: a, equation: eq, kind: eq.Kind, scatter: species.ScatterOf(b.String(), id, a.Group)}
+}
+
+// rate is a metabolic rate with all that a worksheet says of it.
+type rate struct {
+	line  *rateLine
+	watt  float64
+	sd    float64 // standard deviation of ln about the truth, as far as the basis knows
+	t0    metabolic.Celsius
+	hasT0 bool    // the rate was moved by Q10 from t0
+	q10   float64 // the factor Q10^((T−T0)/10), 1 when not moved
+	pred  *species.Prediction
+}
+
+// at is the line's rate at a mass and, for ectotherms, a temperature.
+func (l *rateLine) at(m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate, error) {
+	r := rate{line: l, q10: 1}
+	switch {
+	case l.equation != nil:
+		w, err := l.equation.Rate(m, t, q10)
+		if err != nil {
+			return r, &noBasis{l.basis, err.Error()}
+		}
+		r.watt, r.sd = float64(w), l.scatter.SDln
+		if !l.animal.Endotherm() && !l.equation.HasTemperatureTerm() && l.equation.HasT0 {
+			r.t0, r.hasT0 = l.equation.T0, true
+			r.q10 = metabolic.Q10Factor(q10, t, l.equation.T0)
+		}
+	case l.measured != nil:
+		w0 := l.measured.Mass
+		if m < w0/measuredReach || m > w0*measuredReach {
+			return r, &noBasis{BasisMeasured, fmt.Sprintf("measured at %s; a mass of %s is outside a quarter to four times that",
+				metabolic.FormatMass(w0), metabolic.FormatMass(m))}
+		}
+		r.watt = float64(l.measured.Rate) * math.Pow(float64(m/w0), measuredExponent)
+		if !l.animal.Endotherm() {
+			if !l.measured.HasTemperature {
+				return r, &noBasis{BasisMeasured, "measured at a body temperature that the table does not give"}
+			}
+			r.t0, r.hasT0 = l.measured.Temperature, true
+			r.q10 = metabolic.Q10Factor(q10, t, l.measured.Temperature)
+			r.watt *= r.q10
+		}
+	default:
+		p, err := species.Relatives(l.animal, m, t)
+		if err != nil {
+			return r, &noBasis{BasisRelatives, err.Error()}
+		}
+		r.watt, r.sd, r.pred = float64(p.Rate), p.SDln, p
+	}
+	if !(r.watt > 0) || math.IsInf(r.watt, 0) {
+		return r, &noBasis{l.basis, "gives no positive rate here"}
+	}
+	return r, nil
+}
+
+// massLimits are the measured masses behind the line; ok is false where the
+// table knows none.
+func (r *rate) massLimits() (low, high metabolic.Mass, ok bool) {
+	l := r.line
+	switch {
+	case l.measured != nil:
+		return l.measured.Mass / measuredReach, l.measured.Mass * measuredReach, true
+	case r.pred != nil:
+		s := species.ScatterOf("relatives", "", l.animal.Class)
+		return s.MassLow, s.MassHigh, s.MassHigh > 0
+	case l.equation.MassHigh > 0:
+		return l.equation.MassLow, l.equation.MassHigh, true
+	case l.scatter.MassHigh > 0:
+		return l.scatter.MassLow, l.scatter.MassHigh, true
+	}
+	return 0, 0, false
+}
+
+// lowConfidence says that the row itself asks for caution.
+func (r *rate) lowConfidence() bool { return r.line.equation != nil && r.line.equation.LowConfidence }
+
+// basisRate is an animal's rate on a basis. An animal without a group constant
+// takes, for the group basis, its measured rate, then the published line for
+// its class.
+func basisRate(b Basis, eq *metabolic.Equation, a *species.Animal, m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate, error) {
+	l := lines(a)
+	switch b {
+	case BasisGroup:
+		if l.group != nil {
+			return l.group.at(m, t, q10)
+		}
+		if l.measured != nil {
+			if r, err := l.measured.at(m, t, q10); err == nil {
+				return r, nil
+			}
+		}
+		if l.class != nil {
+			return l.class.at(m, t, q10)
+		}
+		return rate{}, &noBasis{b, fmt.Sprintf("no group constant for a %s, no rate measured near this mass and no published line", a.Group)}
+	case BasisEquation:
+		if eq != nil && eq.Applies(a.Group, a.Name) {
+			return equationLine(BasisEquation, eq, a).at(m, t, q10)
+		}
+		if l.class != nil {
+			return l.class.at(m, t, q10)
+		}
+		return rate{}, &noBasis{b, fmt.Sprintf("no published line for a %s", a.Group)}
+	case BasisMeasured:
+		if l.measured == nil {
+			if l.flag != "" {
+				return rate{}, &noBasis{b, "the measured animal is marked " + l.flag}
+			}
+			return rate{}, &noBasis{b, "its rate is not in the measured table"}
+		}
+		return l.measured.at(m, t, q10)
+	default:
+		return (&rateLine{basis: BasisRelatives, animal: a, kind: "BMR or SMR"}).at(m, t, q10)
+	}
+}
+
+// pairRates are the rates of both animals on one basis. They fail together: a
+// ratio of rates from two different bases is not one of the method's, except
+// where an animal has no group constant at all.
+func pairRates(b Basis, eq *metabolic.Equation, c *Case, m *Model) (t, mo rate, err error) {
+	q10 := c.Method.Q10
+	t, err = basisRate(b, eq, c.Patient.Animal, c.Patient.Mass.Middle, c.Patient.Temperature, q10)
+	if err != nil {
+		return t, mo, fmt.Errorf("%s: %w", animalWords(c.Patient.Animal), err)
+	}
+	mo, err = basisRate(b, eq, m.Animal, m.Mass.Middle, m.Temperature, q10)
+	if err != nil {
+		return t, mo, fmt.Errorf("%s: %w", animalWords(m.Animal), err)
+	}
+	if b == BasisEquation && t.line.kind != mo.line.kind {
+		return t, mo, &noBasis{b, fmt.Sprintf("the lines are of two kinds of rate (%s: %s, %s; %s: %s, %s), which are not compared",
+			animalWords(c.Patient.Animal), t.line.equation.ID, t.line.kind, animalWords(m.Animal), mo.line.equation.ID, mo.line.kind)}
+	}
+	return t, mo, nil
+}
+
+// animalWords is the name by which a text calls an animal.
+func animalWords(a *species.Animal) string {
+	if n := a.CommonName(); n != "" {
+		return n
+	}
+	return a.Name
+}
+
+// parseBasis reads the case file's word.
+func parseBasis(s string) (Basis, bool) {
+	for i, n := range basisNames {
+		if strings.EqualFold(s, n) {
+			return Basis(i), true
+		}
+	}
+	return 0, false
+}

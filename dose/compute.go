@@ -1,0 +1,177 @@
+package dose
+
+import (
+	"math"
+
+	"tayra/metabolic"
+	"tayra/species"
+)
+
+// numbers is all that compute finds out of a case: numbers and slugs, no texts.
+type numbers struct {
+	models  []modelNumbers
+	from    int // index of the model drafted from
+	raised  []raised
+	stopped bool // a stop is raised that no override covers
+	summary Summary
+	several bool
+	product productNumbers
+
+	proposedRaised []raised // what a proposed regimen raises of itself
+}
+
+// modelNumbers is the draft from one model.
+type modelNumbers struct {
+	target, model rate
+	m, r, s       float64 // ratios of mass, of metabolic rate, and mass-specific
+	plans         []planNumbers
+	drafted       int // index into plans
+	chosenByCase  bool
+	spread        spread
+	range90       DoseRange
+	range50       DoseRange
+	planBuf       [4]planNumbers
+}
+
+func (n *modelNumbers) plan() *planNumbers { return &n.plans[n.drafted] }
+
+// compute works a case out in numbers. The only error is a basis that one of
+// the animals lacks: an input error, since the case asked for it.
+func compute(c *Case, n *numbers) error {
+	n.raised, n.stopped, n.several = n.raised[:0], false, false
+	if cap(n.models) < len(c.Models) {
+		n.models = make([]modelNumbers, len(c.Models))
+	}
+	n.models = n.models[:len(c.Models)]
+	for i := range c.Models {
+		if err := computeModel(c, i, &n.models[i]); err != nil {
+			return err
+		}
+	}
+	n.from = nearestModel(c)
+	if len(c.Models) > 1 {
+		n.several = summarise(c, n)
+	}
+	if err := computeProduct(c, n); err != nil {
+		return err
+	}
+	raise(c, n)
+	for i := range n.raised {
+		if n.raised[i].level == Stop && !overridden(c, &n.raised[i]) {
+			n.stopped = true
+		}
+	}
+	return nil
+}
+
+func computeModel(c *Case, i int, n *modelNumbers) error {
+	m := &c.Models[i]
+	t, mo, err := pairRates(c.Method.Basis, c.Method.Equation, c, m)
+	if err != nil {
+		return basisError(c, i, err)
+	}
+	n.target, n.model = t, mo
+	n.m = float64(c.Patient.Mass.Middle / m.Mass.Middle)
+	n.r = t.watt / mo.watt
+	n.s = n.r / n.m
+	// The same basis, mass and temperature on both sides must leave S exactly
+	// 1, whatever the rounding of the powers: S = 1 changes nothing.
+	if math.Abs(n.s-1) < 1e-12 {
+		n.s = 1
+	}
+	longest := longestInterval(&m.Regimen, c.Drug.Activity, c.Drug.Depot)
+	n.plans = plansFor(&m.Regimen, n.s, c.Method.Intervals, longest, n.planBuf[:0])
+	name := draftedPlan(&m.Regimen, n.s, c.Drug.Activity, c.Drug.Depot)
+	n.chosenByCase = false
+	if c.Method.Plan != PlanDefault && m.Regimen.Interval.Kind == metabolic.Repeated && !c.Drug.Depot {
+		name, n.chosenByCase = c.Method.Plan, true
+	}
+	for k := range n.plans {
+		if n.plans[k].name == name {
+			n.drafted = k
+		}
+	}
+	n.spread = spreadOf(c, m, &n.target, &n.model)
+	about := n.plan().dose
+	if name == PlanOnce {
+		about = scale(m.Regimen.PerKg, n.s) // the range of a single dose is taken on d·S
+	}
+	n.range90 = rangeAbout(about, n.spread.perKg, z90)
+	n.range50 = rangeAbout(about, n.spread.perKg, z50)
+	return nil
+}
+
+// nearestModel is the model to draft from: nearest kin (genus, family, order,
+// class), then nearest mass, then the first named.
+func nearestModel(c *Case) int {
+	best, bestRank, bestOff := 0, 99, math.Inf(1)
+	for i := range c.Models {
+		rank := kinRank(species.Kinship(c.Patient.Animal, c.Models[i].Animal))
+		off := math.Abs(math.Log(float64(c.Patient.Mass.Middle / c.Models[i].Mass.Middle)))
+		if rank < bestRank || rank == bestRank && off < bestOff-1e-12 {
+			best, bestRank, bestOff = i, rank, off
+		}
+	}
+	return best
+}
+
+func kinRank(kinship string) int {
+	switch kinship {
+	case "species":
+		return 0
+	case "genus":
+		return 1
+	case "family":
+		return 2
+	case "order":
+		return 3
+	case "class":
+		return 4
+	}
+	return 5
+}
+
+// middle is the geometric middle of a dose range.
+func middle(p Pair) float64 {
+	if p[0] == p[1] {
+		return p[0]
+	}
+	return math.Sqrt(p[0] * p[1])
+}
+
+// summarise sums up several models: method, section 9. It is only for
+// repeated regimens and infusions in one unit, which have a daily amount.
+func summarise(c *Case, n *numbers) bool {
+	daily := make([]float64, len(n.models))
+	sds := make([]float64, len(n.models))
+	for i := range n.models {
+		if c.Models[i].Regimen.Interval.Kind == metabolic.Once {
+			return false
+		}
+		daily[i] = middle(n.models[i].plan().daily)
+		sds[i] = n.models[i].spread.perKg
+	}
+	n.summary = Summarise(daily, sds)
+	return true
+}
+
+// overridden says whether the case goes on past a stop with a written reason.
+func overridden(c *Case, r *raised) bool {
+	if CannotOverride(string(r.slug)) {
+		return false
+	}
+	for i := range c.Overrides {
+		if c.Overrides[i].Slug == r.name() {
+			return true
+		}
+	}
+	return false
+}
+
+// name is the slug as a case file writes it: a hazard's carries its row.
+func (r *raised) name() string {
+	if r.hazard != nil {
+		return string(HazardOnFile) + "-" + r.hazard.ID
+	}
+	return string(r.slug)
+}

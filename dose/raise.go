@@ -1,0 +1,407 @@
+package dose
+
+import (
+	"math"
+	"strings"
+
+	"tayra/metabolic"
+	"tayra/species"
+)
+
+// raise finds the cautions of a case. It gives slugs and numbers; the words
+// are in cautiontext.go.
+func raise(c *Case, n *numbers) {
+	add := func(s Slug, l Level, model int, num ...float64) *raised {
+		r := raised{slug: s, level: l, model: model}
+		switch len(num) {
+		case 3:
+			r.c = num[2]
+			fallthrough
+		case 2:
+			r.b = num[1]
+			fallthrough
+		case 1:
+			r.a = num[0]
+		}
+		n.raised = append(n.raised, r)
+		return &n.raised[len(n.raised)-1]
+	}
+	raiseAnimal(c, n, add)
+	for i := range c.Models {
+		raiseModel(c, n, i, add)
+	}
+	raiseDrug(c, n, add)
+	raiseCase(c, n, add)
+	raiseProposed(c, n)
+	sortRaised(n.raised)
+}
+
+type adder = func(Slug, Level, int, ...float64) *raised
+
+// implausible says whether a mass cannot be the animal's: beyond three times
+// the adult range's high end or under a fiftieth of its low end (a third of a
+// thousandth for the young), which is what grams for kilograms look like.
+func implausible(a *species.Animal, m metabolic.Mass, s Stage) bool {
+	if a.AdultHigh == 0 {
+		return false
+	}
+	low := a.AdultLow / 50
+	if s != Adult {
+		low = a.AdultLow / 3000
+	}
+	return m > 3*a.AdultHigh || m < low
+}
+
+// raiseAnimal is what the patient alone raises.
+func raiseAnimal(c *Case, n *numbers, add adder) {
+	p := &c.Patient
+	a := p.Animal
+	switch w := p.Mass.Middle; {
+	case a.AdultHigh == 0:
+		add(MassUnjudged, Note, -1)
+	case implausible(a, w, p.Stage):
+		add(ImplausibleMass, Stop, -1, float64(w), float64(a.AdultLow), float64(a.AdultHigh))
+	case w > a.AdultHigh || w < a.AdultLow && p.Stage == Adult:
+		off := math.Max(float64(w/a.AdultHigh), float64(a.AdultLow/w))
+		l := Note
+		if off >= 1.5 {
+			l = Warn
+		}
+		add(AdultMass, l, -1, float64(w), float64(a.AdultLow), float64(a.AdultHigh))
+	}
+	if p.Mass.Estimated() {
+		l := Note
+		if p.Mass.HalfWidth() > math.Log(1.2) {
+			l = Warn
+		}
+		add(EstimatedMass, l, -1, float64(p.Mass.Low), float64(p.Mass.High))
+	}
+	switch p.Stage {
+	case Neonate:
+		add(NeonatePatient, Stop, -1)
+	case Juvenile:
+		add(JuvenilePatient, Warn, -1)
+	}
+	if p.Conditions&Torpid != 0 {
+		add(TorpidPatient, Stop, -1)
+	}
+	if a.Endotherm() && p.HasTemperature && a.HasTemperature {
+		// An endotherm's temperature never scales the rate: it only asks.
+		d := float64(p.Temperature - a.BodyTemperature)
+		if d < -5 || d > 1.5 {
+			add(BodyTemperature, Warn, -1, float64(p.Temperature), float64(a.BodyTemperature))
+		}
+	}
+	for _, cond := range conditionWords {
+		switch cond.bit {
+		case Torpid:
+			continue
+		case RenalDisease, HepaticDisease:
+			if p.Conditions&cond.bit != 0 && clearingOrgan(cond.bit, c.Drug.Elimination) {
+				add(ClearingOrgan, Stop, -1).detail = cond.word
+				continue
+			}
+		}
+		if p.Conditions&cond.bit != 0 {
+			add(PatientCondition, Warn, -1).detail = cond.word
+		}
+	}
+	if what := species.MassNotBody(a); what != "" || p.Conditions&Gravid != 0 {
+		if what == "" {
+			what = "eggs"
+		} else if p.Conditions&Gravid != 0 {
+			what += " and eggs"
+		}
+		add(MassNotBody, Note, -1).detail = what
+	}
+	switch p.FoodProducing {
+	case Yes:
+		add(FoodAnimal, Warn, -1, 1)
+	case NotSaid:
+		if eaten, _ := species.CommonlyEaten(a); eaten {
+			add(FoodAnimal, Warn, -1, 0)
+		}
+	}
+}
+
+// clearingOrgan says whether the diseased organ is the one that clears the drug.
+func clearingOrgan(disease Condition, e Elimination) bool {
+	if disease == RenalDisease {
+		return e == Renal || e == Mixed
+	}
+	return e == Hepatic || e == Biliary || e == Mixed
+}
+
+// raiseModel is what one model raises against the patient.
+func raiseModel(c *Case, n *numbers, i int, add adder) {
+	m, mn := &c.Models[i], &n.models[i]
+	a, b := c.Patient.Animal, m.Animal
+	plan := mn.plan()
+	s := mn.s
+	if species.SameSpecies(a, b) {
+		add(SameSpecies, Stop, i)
+	}
+	if implausible(b, m.Mass.Middle, Adult) {
+		add(ImplausibleMass, Stop, i, float64(m.Mass.Middle), float64(b.AdultLow), float64(b.AdultHigh))
+	}
+	if m.Mass.Estimated() {
+		l := Note
+		if m.Mass.HalfWidth() > math.Log(1.2) {
+			l = Warn
+		}
+		add(EstimatedMass, l, i, float64(m.Mass.Low), float64(m.Mass.High))
+	}
+	if a.Class != b.Class {
+		l := Stop
+		if c.Drug.Margin == Wide {
+			l = Warn
+		}
+		add(CrossClass, l, i)
+	}
+	if a.Endotherm() != b.Endotherm() {
+		add(CrossThermy, Stop, i)
+	}
+	th := &c.Method.Thresholds
+	switch {
+	case outside(mn.m, th.MassRatioExtreme):
+		add(MassRatioExtreme, Warn, i, mn.m)
+	case outside(mn.m, th.MassRatio):
+		add(MassRatio, Warn, i, mn.m)
+	}
+	raiseMassLimits(&mn.target, c.Patient.Mass.Middle, -1, add)
+	raiseMassLimits(&mn.model, m.Mass.Middle, i, add)
+	if mn.target.lowConfidence() {
+		add(LowConfidence, Warn, -1).detail = mn.target.line.equation.ID
+	}
+	if mn.model.lowConfidence() {
+		add(LowConfidence, Warn, i).detail = mn.model.line.equation.ID
+	}
+	if mn.target.line.basis == BasisGroup || mn.model.line.basis == BasisGroup {
+		add(GroupConstant, Note, i)
+	}
+	raiseDisagreement(c, m, mn, i, th, add)
+	if outside(s, th.LargeChange) {
+		add(LargeChange, Warn, i, s)
+	}
+	if k := m.Regimen.Interval.Kind; k != metabolic.Infusion {
+		switch {
+		case plan.peakRatio > th.PeakStop*(1+1e-12) && c.Drug.Margin != Wide:
+			add(Peak, Stop, i, plan.peakRatio, th.PeakStop)
+		case plan.peakRatio > th.PeakWarn*(1+1e-12):
+			add(Peak, Warn, i, plan.peakRatio, th.PeakWarn)
+		}
+	}
+	if m.Regimen.Interval.Kind == metabolic.Repeated {
+		want := float64(m.Regimen.Interval.Hours) / s
+		if want < th.IntervalShortH || want > th.IntervalLongH {
+			add(Impractical, Warn, i, want)
+		}
+		if plan.name == PlanBothAdjusted && (s < th.CompoundedLow || s > th.CompoundedHigh) {
+			add(Compounded, Warn, i, s)
+		}
+	}
+	if b.Human() || a.Human() {
+		add(HumanModel, Warn, i)
+	}
+	if t := m.Tolerated; t != nil && t.Unit == m.Regimen.Unit && m.Regimen.Interval.Kind != metabolic.Infusion &&
+		plan.dose[1] > t.PerKg*(1+1e-12) {
+		add(AboveTolerated, Stop, i, plan.dose[1], t.PerKg)
+	}
+	if m.HalfLife == 0 {
+		add(NoHalfLife, Note, i)
+	} else if m.Regimen.Interval.Kind == metabolic.Repeated {
+		raiseKinetics(m, mn, i, th, add)
+	}
+	route := c.Drug.Route
+	if route == "" {
+		route = c.Models[n.from].Route
+	}
+	if route != "" && m.Route != "" && !sameRoute(route, m.Route) {
+		add(RouteDiffers, Warn, i).detail = m.Route
+	}
+	if oralRoute(route) || oralRoute(m.Route) {
+		if g, h := species.GutType(a), species.GutType(b); g != "" && h != "" && g != h {
+			add(GutType, Warn, i)
+		}
+	}
+}
+
+// outside says whether a ratio lies outside 1/x to x.
+func outside(ratio, x float64) bool {
+	return ratio > x*(1+1e-12) || ratio < 1/x*(1-1e-12)
+}
+
+// raiseMassLimits asks whether the mass lies among the measured ones behind
+// the basis. whose is the model whose mass it is, -1 for the patient.
+func raiseMassLimits(r *rate, m metabolic.Mass, whose int, add adder) {
+	low, high, ok := r.massLimits()
+	if ok && (m < low || m > high) {
+		x := add(OutsideData, Warn, whose, float64(m), float64(low), float64(high))
+		x.detail = r.line.basis.String()
+	}
+}
+
+// raiseDisagreement holds S against S by every other basis that both animals
+// have, and raises the widest disagreement.
+func raiseDisagreement(c *Case, m *Model, mn *modelNumbers, i int, th *Thresholds, add adder) {
+	worst, worstBasis := 1.0, BasisGroup
+	for _, b := range Bases() {
+		if b == c.Method.Basis {
+			continue
+		}
+		t, mo, err := pairRates(b, nil, c, m)
+		if err != nil {
+			continue
+		}
+		ratio := t.watt / mo.watt / mn.m / mn.s
+		if off := math.Max(ratio, 1/ratio); off > math.Max(worst, 1/worst) {
+			worst, worstBasis = ratio, b
+		}
+	}
+	off := math.Max(worst, 1/worst)
+	switch {
+	case off >= th.BasisWarn:
+		add(BasisDisagrees, Warn, i, off, worst).detail = worstBasis.String()
+	case off >= th.BasisNote:
+		add(BasisDisagrees, Note, i, off, worst).detail = worstBasis.String()
+	}
+}
+
+// raiseKinetics looks at the half-life against the drafted interval.
+func raiseKinetics(m *Model, mn *modelNumbers, i int, th *Thresholds, add adder) {
+	half := float64(m.HalfLife) / mn.s // elimination half-life follows 1/S
+	if acc := 1 / (1 - math.Exp(-math.Ln2*mn.plan().interval/half)); acc > th.Accumulation {
+		add(Accumulation, Warn, i, acc, half)
+	}
+	if m.AbsorptionHalf > m.HalfLife {
+		add(FlipFlop, Warn, i, float64(m.AbsorptionHalf), float64(m.HalfLife))
+	}
+}
+
+// raiseDrug is what the drug raises, whatever the model.
+func raiseDrug(c *Case, n *numbers, add adder) {
+	d := &c.Drug
+	if d.Margin == Narrow {
+		add(NarrowMargin, Stop, -1)
+	}
+	if d.Depot {
+		add(DepotForm, Stop, -1)
+	}
+	if d.Controlled == Yes {
+		add(ControlledDrug, Warn, -1)
+	}
+	if l, what := effectDriven(d.Name, d.Class); l != "" {
+		add(EffectDriven, l, -1).detail = what
+	}
+	if against := suitabilityAgainst(d); against > 0 {
+		add(Suitability, Warn, -1, float64(against))
+	}
+	raiseHazards(c, n)
+	raiseAnatomy(c, n, add)
+}
+
+// raiseCase is what the case as a whole raises.
+func raiseCase(c *Case, n *numbers, add adder) {
+	if len(c.Models) == 1 {
+		add(OneModel, Note, -1)
+	} else {
+		raiseSeveral(c, n, add)
+	}
+	for i := range c.Published {
+		p := &c.Published[i]
+		l, same := Note, 0.0
+		if species.SameSpecies(p.Animal, c.Patient.Animal) {
+			l, same = Warn, 1
+		}
+		add(PublishedExists, l, -1, same).detail = p.Animal.Name
+	}
+	if len(c.Method.Changed) > 0 {
+		add(Thresh, Note, -1, float64(len(c.Method.Changed)))
+	}
+	p := &n.product
+	if p.given {
+		for k := range p.ends[:p.n] {
+			if p.ends[k].BelowStep {
+				add(BelowStep, Stop, -1, p.ends[k].Exact, p.step)
+				return
+			}
+		}
+		worst := 0.0
+		for k := range p.ends[:p.n] {
+			if e := p.ends[k].ErrorPercent; math.Abs(e) > math.Abs(worst) {
+				worst = e
+			}
+		}
+		if math.Abs(worst) > c.Method.Thresholds.RoundingPercent {
+			add(RoundingError, Warn, -1, worst)
+		}
+	}
+}
+
+// raiseSeveral looks at several models together.
+func raiseSeveral(c *Case, n *numbers, add adder) {
+	order := c.Models[0].Animal.Order
+	one := true
+	for i := range c.Models {
+		one = one && c.Models[i].Animal.Order == order
+	}
+	if one {
+		add(OneOrder, Note, -1).detail = order
+	}
+	if !n.several {
+		return
+	}
+	if n.summary.FoldSpread > c.Method.Thresholds.ModelsFold {
+		add(ModelsDisagree, Warn, -1, n.summary.FoldSpread)
+	}
+	if k := n.summary.DecidedBy; k >= 0 {
+		add(OneDecides, Warn, k)
+	}
+}
+
+// sortRaised puts stops first, keeping the order within a level, and merges
+// what two models raise alike.
+func sortRaised(rs []raised) {
+	// An insertion sort: a dozen entries, nearly in order, no allocation.
+	for i := 1; i < len(rs); i++ {
+		for k := i; k > 0 && levelRank(rs[k].level) < levelRank(rs[k-1].level); k-- {
+			rs[k], rs[k-1] = rs[k-1], rs[k]
+		}
+	}
+}
+
+// conditionWords are the conditions and what the case file calls them.
+var conditionWords = []struct {
+	bit  Condition
+	word string
+}{
+	{Dehydrated, "dehydrated"},
+	{RenalDisease, "renal"},
+	{HepaticDisease, "hepatic"},
+	{Pregnant, "pregnant"},
+	{Lactating, "lactating"},
+	{Torpid, "torpid"},
+	{Obese, "obese"},
+	{Gravid, "gravid"},
+}
+
+// routeGroup reduces a route to what matters for scaling: how the drug gets in.
+func routeGroup(route string) string {
+	switch strings.ToLower(strings.TrimSpace(route)) {
+	case "":
+		return ""
+	case "iv", "i.v.", "intravenous", "intravenously", "io", "intraosseous":
+		return "intravenous"
+	case "sc", "sq", "s.c.", "subcutaneous", "subcut", "subq":
+		return "subcutaneous"
+	case "im", "i.m.", "intramuscular":
+		return "intramuscular"
+	case "po", "p.o.", "oral", "orally", "by mouth", "per os", "gavage", "in feed", "in food", "in water":
+		return "oral"
+	}
+	return strings.ToLower(strings.TrimSpace(route))
+}
+
+func sameRoute(a, b string) bool { return routeGroup(a) == routeGroup(b) }
+
+func oralRoute(r string) bool { return routeGroup(r) == "oral" }

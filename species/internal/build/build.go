@@ -44,7 +44,7 @@ func read(data fs.FS, name string) (*table, error) {
 // All returns the generated files by name.
 func All(data fs.FS) (map[string][]byte, error) {
 	out := make(map[string][]byte)
-	for _, make := range []func(fs.FS, map[string][]byte) error{Index, Drugs} {
+	for _, make := range []func(fs.FS, map[string][]byte) error{Index, Drugs, Relatives, Scatter} {
 		if err := make(data, out); err != nil {
 			return nil, err
 		}

@@ -104,7 +104,7 @@ func rounded(x float64, digits int) float64 {
 }
 
 func massText(m Mass, digits int) string {
-	if rounded(float64(m), digits) < 1 {
+	if m != 0 && rounded(float64(m), digits) < 1 {
 		return Significant(m.Grams(), digits) + " g"
 	}
 	return Significant(float64(m), digits) + " kg"
@@ -136,7 +136,7 @@ func FormatAmount(v float64, unit AmountUnit) string {
 		return s + " units"
 	}
 	switch r := rounded(v, doseDigits); {
-	case r < 1:
+	case r < 1 && r != 0:
 		return Significant(v*1000, doseDigits) + " mcg"
 	case r >= 1000:
 		return Significant(v/1000, doseDigits) + " g"

@@ -31,12 +31,12 @@ func TestSignificant(t *testing.T) {
 		{0.0009995, 3, "0.001"},
 		{1e-6, 3, "0.000001"},
 		{1.2345e-6, 3, "0.00000123"},
-		{2.675, 3, "2.68"}, // held as 2.67499999999999982…
-		{1.005, 3, "1.01"}, // held as 1.00499999999999989…
-		{0.145, 2, "0.15"}, // half away from zero, not to even
-		{0.125, 2, "0.13"}, // the same where binary is exact
-		{2.5, 1, "3"},      // the same
-		{-2.5, 1, "-3"},    // away from zero below it
+		{2.675, 3, "2.68"},               // held as 2.67499999999999982…
+		{1.005, 3, "1.01"},               // held as 1.00499999999999989…
+		{0.145, 2, "0.15"},               // half away from zero, not to even
+		{0.125, 2, "0.13"},               // the same where binary is exact
+		{2.5, 1, "3"},                    // the same
+		{-2.5, 1, "-3"},                  // away from zero below it
 		{0.1, 17, "0.10000000000000001"}, // all digits asked for: the noise is shown
 		{0.30000000000000004, 12, "0.3"},
 		{121.00000000000001, 12, "121"},
@@ -110,6 +110,8 @@ func TestFormats(t *testing.T) {
 		{FormatMass(0.9999999), "1 kg"},
 		{FormatMass(0.0035), "3.5 g"},
 		{FormatMass(2970), "2,970 kg"},
+		{FormatMass(0), "0 kg"},
+		{mg(0), "0 mg"},
 		{FormatBodyMass(mass("41 kg")), "41 kg"},
 		{FormatBodyMass(mass("36-46 kg")), "40.7 kg (estimated, 36 to 46 kg)"},
 		{FormatBodyMass(mass("41 kg ± 10 %")), "41 kg (estimated, 37.3 to 45.1 kg)"},

@@ -1,9 +1,13 @@
 package reports
 
 import (
+	"fmt"
 	"testing"
+	"unicode"
 
 	"github.com/jung-kurt/gofpdf"
+	"golang.org/x/image/font/sfnt"
+	"golang.org/x/image/math/fixed"
 
 	"tayra/reports/internal/letters"
 )
@@ -41,6 +45,30 @@ func TestFontsHoldTheSameLetters(t *testing.T) {
 	for letter := rune(0); letter < 0x10000; letter++ {
 		if r, b := sansRegular.has(letter), sansBold.has(letter); r != b {
 			t.Errorf("%U: regular %v, bold %v", letter, r, b)
+		}
+	}
+}
+
+// Every letter but the spaces has an outline, and not that of the empty box
+// which stands for a letter that a font lacks.
+func TestLettersHaveShapes(t *testing.T) {
+	for _, face := range []*fontFace{&sansRegular, &sansBold} {
+		outline := func(glyph sfnt.GlyphIndex) string {
+			segments, err := face.font().LoadGlyph(nil, glyph, fixed.I(64), nil)
+			if err != nil {
+				t.Fatal(err)
+			}
+			return fmt.Sprint(segments)
+		}
+		box := outline(0)
+		for _, r := range letters.All() {
+			glyph, err := face.font().GlyphIndex(nil, r)
+			if err != nil || glyph == 0 || unicode.IsSpace(r) || unicode.Is(unicode.Zs, r) {
+				continue
+			}
+			if got := outline(glyph); got == "[]" || got == box {
+				t.Errorf("%s %U %q has no shape", face.name, r, r)
+			}
 		}
 	}
 }

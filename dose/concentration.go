@@ -222,6 +222,15 @@ func Sample(k Kinetics, d Dosing, fromH, toH float64, n int) []CurvePoint {
 	if !d.Once {
 		noise = noiseAt * c.tau
 	}
+	pinned := func(h float64) float64 { // a dose at an end stands exactly there
+		switch {
+		case math.Abs(h-fromH) <= noise:
+			return fromH
+		case math.Abs(h-toH) <= noise:
+			return toH
+		}
+		return h
+	}
 	i := 0
 	doses, since := c.position(fromH)
 	if since <= noise { // a dose falls on the first point
@@ -235,7 +244,7 @@ func Sample(k Kinetics, d Dosing, fromH, toH float64, n int) []CurvePoint {
 		}
 		end := start + c.tau
 		if start >= fromH-noise {
-			points = append(points, CurvePoint{math.Max(start, fromH), c.at(given, 0)})
+			points = append(points, CurvePoint{pinned(start), c.at(given, 0)})
 		}
 		peak := start + c.peak(given)
 		peaked := !(peak > math.Max(start, fromH)+noise && peak < math.Min(end, toH)-noise)
@@ -258,7 +267,7 @@ func Sample(k Kinetics, d Dosing, fromH, toH float64, n int) []CurvePoint {
 		if end > toH+noise {
 			return points
 		}
-		points = append(points, CurvePoint{math.Min(end, toH), c.at(given, c.tau)})
+		points = append(points, CurvePoint{pinned(end), c.at(given, c.tau)})
 	}
 }
 

@@ -480,6 +480,38 @@ func TestTinyAndHugeIntervals(t *testing.T) {
 	}
 }
 
+// Doses that follow each other within a tiny part of the half-life still add up
+// to the last digits: each single curve is a product, so that their sum is a
+// reference without cancellation.
+func TestSuperpositionAtTinyIntervals(t *testing.T) {
+	for _, tau := range []float64{1e-9, 1e-7, 1e-6, 4e-6, 3e-5, 1e-3} {
+		for _, absorption := range []float64{0.02, 0.99999, 1, 1.5, 30} {
+			k := Kinetics{HalfLifeH: 1, VolumeLPerKg: 1, AbsorptionHalfLifeH: absorption}
+			for _, n := range []int{1, 2, 3, 19} {
+				sum := 0.0
+				for j := range n {
+					sum += ConcentrationAt(k, Dosing{DosePerKg: 1, Once: true}, (float64(j)+0.5)*tau)
+				}
+				got := ConcentrationAt(k, Dosing{DosePerKg: 1, IntervalH: tau}, (float64(n)-0.5)*tau)
+				wantNear(t, "sum of single doses", got, sum, 1e-11)
+			}
+		}
+	}
+}
+
+// Elimination that is nothing beside absorption: with lo → 0 the curve within
+// an interval is absorption against a steady loss,
+// (Cmax − Cmin)/Cavg = ke·τ·[(1 − e^(−ka·t))/(1 − e^(−ka·τ)) − t/τ] at its
+// largest, t = ln(ka·τ/(1 − e^(−ka·τ)))/ka.
+func TestVerySlowElimination(t *testing.T) {
+	const ka, ke, tau = math.Ln2, math.Ln2 / 1e12, 24.0
+	p := steadyProfile(t, Kinetics{HalfLifeH: 1e12, VolumeLPerKg: 1, AbsorptionHalfLifeH: 1}, Dosing{DosePerKg: 1, IntervalH: tau}, 0)
+	all := 1 - math.Exp2(-tau)
+	at := math.Log(ka*tau/all) / ka
+	wantNear(t, "tmax", p.TmaxH, at, 1e-9)
+	wantNear(t, "fluctuation", p.Fluctuation, ke*tau*((1-math.Exp2(-at))/all-at/tau), 1e-9)
+}
+
 // At tmax the curve is level, and the peak of steady state comes no later than
 // a single dose's and never in the second half of the interval.
 func TestPeakTime(t *testing.T) {
@@ -641,12 +673,14 @@ func TestSampledPeaksAreEqual(t *testing.T) {
 			d := Dosing{DosePerKg: 1, IntervalH: tau}
 			p := steadyProfile(t, k, d, 0)
 			for first := 60.0; first < 70; first++ {
-				top, low := 0.0, math.Inf(1)
-				for _, pt := range Sample(k, d, first*tau, (first+1)*tau, 7) {
-					top, low = math.Max(top, pt.C), math.Min(low, pt.C)
+				for _, n := range []int{2, 7} {
+					top, low := 0.0, math.Inf(1)
+					for _, pt := range Sample(k, d, first*tau, (first+1)*tau, n) {
+						top, low = math.Max(top, pt.C), math.Min(low, pt.C)
+					}
+					wantNear(t, "sampled peak", top, p.Cmax, 1e-9)
+					wantNear(t, "sampled trough", low, p.Cmin, 1e-9)
 				}
-				wantNear(t, "sampled peak", top, p.Cmax, 1e-9)
-				wantNear(t, "sampled trough", low, p.Cmin, 1e-9)
 			}
 		}
 	}
@@ -665,6 +699,17 @@ func TestSampleOfOneDoseAndOfInfusion(t *testing.T) {
 		for i := range tt.want {
 			wantNear(t, "H", tt.got[i].H, tt.want[i].H, 1e-15)
 			wantNear(t, "C", tt.got[i].C, tt.want[i].C, 1e-14)
+		}
+	}
+	// The span begins and ends where it was told to, to the last bit.
+	for i := 1; i < 60; i++ {
+		from := 0.07 * float64(i)
+		for _, to := range []float64{from + 1.7, 17.3, 24, 36} {
+			for _, d := range []Dosing{{DosePerKg: 8, Once: true}, {DosePerKg: 1, Infusion: true}, {DosePerKg: 1, IntervalH: 0.7}} {
+				if points := Sample(k, d, from, to, 50); points[len(points)-1].H != to || points[0].H != from {
+					t.Errorf("from %g to %g, asked for %g to %g", points[0].H, points[len(points)-1].H, from, to)
+				}
+			}
 		}
 	}
 	if later := Sample(k, Dosing{DosePerKg: 8, Once: true}, 3, 6, 2); len(later) != 2 || math.Abs(later[0].C-4) > 1e-12 {

@@ -45,9 +45,14 @@ type reading struct {
 	meant       string // bySpelling: the name that it is near to
 }
 
+// mostSpellings is how many unknown words of a case are compared with every
+// name in the lists; known names are found however long the text is.
+const mostSpellings = 32
+
 // readDrug reads the drug and the class of a case.
 func readDrug(drug, class string) []reading {
 	var out []reading
+	spellings := mostSpellings
 	for _, text := range []string{drug, class} {
 		tokens := fold.Tokens(text)
 		for len(tokens) > 0 {
@@ -57,7 +62,7 @@ func readDrug(drug, class string) []reading {
 			} else {
 				tokens = nil
 			}
-			out = readPart(out, part)
+			out = readPart(out, part, &spellings)
 		}
 	}
 	return out
@@ -66,16 +71,15 @@ func readDrug(drug, class string) []reading {
 // readPart reads one half of a combination. The longest run of words that is
 // a known name is taken first, so that "sodium phosphate" in "dexamethasone
 // sodium phosphate" is no drug and "benzyl alcohol" no alcohol.
-func readPart(out []reading, words []string) []reading {
+func readPart(out []reading, words []string, spellings *int) []reading {
 	var unknown []string
-	alone := slices.DeleteFunc(slices.Clone(words), func(w string) bool { return preparation[w] })
 	for i := 0; i < len(words); {
 		n := min(5, len(words)-i)
 		for ; n > 0; n-- {
 			key := strings.Join(words[i:i+n], "")
 			if l, ok := lookUp(drugsIndex, key); ok {
 				e := parseDrug(l)
-				if e.whole && strings.Join(alone, "") != key {
+				if e.whole && (slices.ContainsFunc(words[:i], otherDrug) || slices.ContainsFunc(words[i+n:], otherDrug)) {
 					continue
 				}
 				out = e.readings(out, key)
@@ -94,20 +98,26 @@ func readPart(out []reading, words []string) []reading {
 			i += n
 			continue
 		}
-		if w := words[i]; !preparation[w] && !salt[w] && !isNumber(w) {
+		if w := words[i]; otherDrug(w) {
 			out = endingReadings(out, w)
 			unknown = append(unknown, w)
 		}
 		i++
 	}
-	for _, w := range unknown[:min(len(unknown), 16)] {
-		out = near1(out, w)
-	}
 	if len(unknown) > 1 && len(unknown) <= 3 {
-		out = near1(out, strings.Join(unknown, ""))
+		unknown = append(unknown, strings.Join(unknown, "")) // a name fallen apart
+	}
+	for _, w := range unknown {
+		if *spellings > 0 {
+			*spellings--
+			out = nearReadings(out, w)
+		}
 	}
 	return out
 }
+
+// otherDrug reports whether a word is more than a form or salt.
+func otherDrug(w string) bool { return !preparation[w] && !salt[w] && !isNumber(w) }
 
 // lookUp finds a key, a plural s let off.
 func lookUp(index, key string) (string, bool) {
@@ -186,8 +196,8 @@ var nearNames = sync.OnceValue(func() []nearName {
 	return out
 })
 
-// near1 adds what a word is within one slip of (under eight letters) or two.
-func near1(out []reading, word string) []reading {
+// nearReadings adds what a word is within one slip of (under eight letters) or two.
+func nearReadings(out []reading, word string) []reading {
 	if len(word) < 5 || len(word) > fold.MaxBytes {
 		return out
 	}
@@ -262,7 +272,7 @@ var (
 		ethylsuccinate sulfate sulphate bisulfate nitrate mononitrate gluconate digluconate glucuronate lactobionate pamoate
 		embonate decanoate propionate dipropionate valerate acetonide furoate cypionate cipionate enanthate isethionate
 		isonicotinate trometamol tromethamine bromide chloride iodide benzoate salicylate base salt ester acid hydroxide
-		oxide carbonate undecylenate phenylpropionate methylsulfate metilsulfate aceponate pivalate caproate`)
+		oxide carbonate monobasic dibasic heptahydrate undecylenate phenylpropionate methylsulfate metilsulfate aceponate pivalate caproate`)
 	preparation = setOf(`injection injectable inj solution sol suspension susp tablet tablets tab tabs capsule capsules cap caps
 		oral paste gel cream ointment powder feed premix medicated pour spot spoton on drops drop spray liquid syrup elixir bolus
 		la long acting longacting depot slow sustained extended release sr er xr xl concentrate generic compounded human

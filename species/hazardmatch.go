@@ -61,18 +61,14 @@ func MatchHazards(drug, class string, a *Animal, route string) []HazardMatch {
 		if !given.admits(h.Route) {
 			continue
 		}
-		relation, rank := relationOf(h, a)
-		if c.sister {
-			if relation != "direct" || h.Regulatory || h.Operator {
-				continue
-			}
-			relation, rank = "relative", "drug class"
-		}
-		m := HazardMatch{Hazard: *h, Relation: relation, RelativeRank: rank, Via: c.via, Meant: c.meant}
-		if h.operatorToo && relation != "direct" {
-			if c.sister {
-				continue
-			}
+		m := HazardMatch{Hazard: *h, Via: c.via, Meant: c.meant}
+		m.Relation, m.RelativeRank = relationOf(h, a)
+		switch {
+		case c.sister && (m.Relation != "direct" || h.Regulatory || h.Operator):
+			continue
+		case c.sister:
+			m.Relation, m.RelativeRank = "relative", "drug class"
+		case h.operatorToo && m.Relation != "direct":
 			m.Relation, m.RelativeRank, m.Operator = "direct", "", true
 		}
 		if m.Relation != "" {

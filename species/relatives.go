@@ -55,7 +55,7 @@ func Relatives(a *Animal, m metabolic.Mass, t metabolic.Celsius) (*Prediction, e
 		return unavailable("a mass of %v kg has no rate", float64(m))
 	}
 	class, ok := line(relativesIndex, a.Class)
-	if !ok || a.Class == "" {
+	if !ok || !plain(a.Class) {
 		return unavailable("too few measured species of the class %s", or(a.Class, "of this animal"))
 	}
 	fit, low, high := parseFit(class)
@@ -71,7 +71,7 @@ func Relatives(a *Animal, m metabolic.Mass, t metabolic.Celsius) (*Prediction, e
 	path := a.Class
 	ranks, names := [3]string{"order", "family", "genus"}, [3]string{a.Order, a.Family, a.Genus()}
 	for i, name := range names {
-		if path += "/" + name; name == "" {
+		if path += "/" + name; !plain(name) {
 			break
 		}
 		l, ok := line(relativesIndex, path)
@@ -100,6 +100,9 @@ func Relatives(a *Animal, m metabolic.Mass, t metabolic.Celsius) (*Prediction, e
 	}
 	return p, nil
 }
+
+// plain reports whether a rank's name cannot be mistaken for a path of names.
+func plain(name string) bool { return name != "" && !strings.ContainsAny(name, "/\t\n") }
 
 func or(s, other string) string {
 	if s == "" {

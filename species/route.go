@@ -43,7 +43,7 @@ var routeWords = map[string]routes{
 var anyInjection = setOf("parenteral parenterally injection injections injected injectable inj infusion infused")
 
 // routeFillers are words of a route that say nothing about the way in.
-var routeFillers = setOf("slow slowly rapid rapidly deep by per via in into the or of medicated drinking bolus over route once given")
+var routeFillers = setOf("slow slowly on rapid rapidly deep by per via in into the or of medicated drinking bolus over route once given")
 
 // readRoute reads the route of a case: "slow IV", "s.c.", "IM or SC". A route
 // with any word that it does not know is unknown, since what it does not say

@@ -52,9 +52,6 @@ func Drugs(data fs.FS, out map[string][]byte) error {
 			return err
 		}
 		if other := entries[key]; other != nil {
-			if slices.Equal(other[2:], drugs) {
-				return nil // one key for two spellings, such as "5-FU" and "5FU"
-			}
 			return fmt.Errorf("drug name %q is there as %q too", written, other[0])
 		}
 		entries[key] = append([]string{written, kind}, drugs...)
@@ -123,9 +120,6 @@ func Drugs(data fs.FS, out map[string][]byte) error {
 			return err
 		}
 		if seen[key] != "" {
-			if seen[key] == r["classes"] {
-				continue // one key for two spellings, such as "beta 2" and "beta-2"
-			}
 			return fmt.Errorf("class name %q is there twice", r["name"])
 		}
 		seen[key] = r["classes"]

@@ -90,7 +90,9 @@ func (e *Equation) NeedsTemperature() bool {
 	return e.ectotherm && (e.HasT0 || e.HasTemperatureTerm())
 }
 
-// Memory reports whether any figure of the row was recalled rather than read.
+// Memory reports whether a or b, or a constant that they round, was recalled
+// rather than read, by the mark in Verified. What else of a row was recalled
+// stands in Note.
 func (e *Equation) Memory() bool { return strings.Contains(e.Verified, "memory") }
 
 // Applies reports whether the line covers a species: by its group, or by its

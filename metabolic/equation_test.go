@@ -364,6 +364,11 @@ func TestRateErrors(t *testing.T) {
 			t.Errorf("%s at %v kg, %v °C, Q10 %v: %v, %v; want an error that says %q", c.e.ID, float64(c.m), float64(c.t), c.q10, p, err, c.says)
 		}
 	}
+	for _, at := range []Celsius{15, 35} {
+		if _, err := alligator.Rate(1, at, 2.5); err != nil {
+			t.Errorf("the ends of the temperatures of a fit are outside it: %v", err)
+		}
+	}
 	// An endotherm's temperature and Q10 change nothing, absurd ones included.
 	for _, id := range []string{"kleiber1947", "group_passerine", "gillooly2001_endotherm", "kolokotrones2010"} {
 		e, _ := FindEquation(id)
@@ -419,8 +424,10 @@ func TestConversionLaw(t *testing.T) {
 			t.Errorf("converted to %q and %q", c[0], c[1])
 		}
 	}
-	if _, _, err := (&Equation{Form: FormPower}).Convert("kg", "W"); err == nil {
-		t.Error("an empty line is converted")
+	for _, e := range []*Equation{{Form: FormPower}, {Form: FormPower, MassUnit: "kg"}, {Form: FormPower, RateUnit: "W"}} {
+		if _, _, err := e.Convert("kg", "W"); err == nil {
+			t.Errorf("a line in %q and %q is converted", e.MassUnit, e.RateUnit)
+		}
 	}
 }
 

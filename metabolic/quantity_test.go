@@ -110,6 +110,8 @@ func TestEveryParserRefuses(t *testing.T) {
 		{"4,2", `"42`},
 		{"1,200", `"1.2`},
 		{"1,200", `"1200`},
+		{"9,9", `"9.9`},
+		{"9,9", `"99`},
 		{"4，2", `"4.2`},
 		{"1,200.5", `"1200.5`},
 		{"1.200,5", `"1200.5`},
@@ -147,6 +149,10 @@ func TestEveryParserRefuses(t *testing.T) {
 			for _, input := range []string{"5", "5 "} {
 				_, err := p.parse(input)
 				refused(t, input, err, "no unit", "write the number with its unit")
+			}
+			for _, input := range []string{"5e", "5e+", "5e" + p.unit, "5e-" + p.unit} {
+				_, err := p.parse(input)
+				refused(t, input, err)
 			}
 			for _, input := range []string{"5 furlongs", "5" + p.unit + " daily", "5" + p.unit + p.unit, "5" + p.unit + ";"} {
 				_, err := p.parse(input)

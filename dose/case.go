@@ -20,6 +20,8 @@ type Case struct {
 	Proposed  *Regimen
 	Overrides []Override
 
+	FitAverage *Target // concentration that a fitted dose is to reach on average
+
 	Input *CaseInput
 }
 

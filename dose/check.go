@@ -169,6 +169,7 @@ func (in *CaseInput) Check() (*Case, error) {
 	k.target(in, c)
 	k.proposed(in, c)
 	k.overrides(in, c)
+	k.fitAverage(in, c)
 	k.temperatures(in, c)
 	if len(k.errs) > 0 {
 		return nil, k.errs
@@ -543,6 +544,20 @@ func (k *checker) target(in *CaseInput, c *Case) {
 	}
 	if ok {
 		c.Target = &Target{Typed: strings.TrimSpace(t.Concentration.Text), Concentration: conc, Source: src}
+	}
+}
+
+// fitAverage reads the concentration that a fitted dose is to reach.
+func (k *checker) fitAverage(in *CaseInput, c *Case) {
+	if in.Fit == nil || !in.Fit.Average.Given() {
+		return
+	}
+	if conc, ok := read(k, in.Fit.Average, "average", metabolic.ParseConcentration); ok {
+		src := k.text(in.Fit.Source, "average_source")
+		if src == "" {
+			k.fail(in.Fit.Source, "average_source", "missing", "write where the concentration was read")
+		}
+		c.FitAverage = &Target{Typed: strings.TrimSpace(in.Fit.Average.Text), Concentration: conc, Source: src}
 	}
 }
 

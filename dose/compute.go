@@ -16,6 +16,7 @@ type numbers struct {
 	summary Summary
 	several bool
 	product productNumbers
+	fit     *fitNumbers
 
 	proposedRaised []raised // what a proposed regimen raises of itself
 }
@@ -30,7 +31,8 @@ type modelNumbers struct {
 	spread        spread
 	range90       DoseRange
 	range50       DoseRange
-	planBuf       [4]planNumbers
+	z90, z50      float64 // how many sd the ranges reach
+	planBuf       [5]planNumbers
 }
 
 func (n *modelNumbers) plan() *planNumbers { return &n.plans[n.drafted] }
@@ -49,6 +51,12 @@ func compute(c *Case, n *numbers) error {
 		}
 	}
 	n.from = nearestModel(c)
+	n.fit = nil
+	if c.Input != nil && c.Input.Fit != nil {
+		if err := computeFit(c, n); err != nil {
+			return err
+		}
+	}
 	if len(c.Models) > 1 {
 		n.several = summarise(c, n)
 	}
@@ -92,6 +100,7 @@ func computeModel(c *Case, i int, n *modelNumbers) error {
 		}
 	}
 	n.spread = spreadOf(c, m, &n.target, &n.model)
+	n.z90, n.z50 = z90, z50
 	about := n.plan().dose
 	if name == PlanOnce {
 		about = scale(m.Regimen.PerKg, n.s) // the range of a single dose is taken on d·S

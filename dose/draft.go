@@ -53,6 +53,7 @@ func Draft(c *Case) (*Worksheet, error) {
 		w.Temperature = n.temperatureTable(c)
 	}
 	w.Several = n.severalRecord(c)
+	n.fitRecord(c, w)
 	n.productRecord(c, w)
 	n.concentrations(c, w)
 	w.Sources = n.sources(c, w)
@@ -197,7 +198,11 @@ func (n *numbers) modelDraft(c *Case, i int) ModelDraft {
 	if r.Interval.Kind == metabolic.Once {
 		d.VolumeRange90 = pointer(rangeAbout(r.PerKg, n.volumeSpread(c, i), z90))
 	}
-	d.Parts = n.rangeParts(c, i)
+	if n.fit != nil && i == n.from {
+		d.Parts = []RangePart{{Name: "prediction of the fitted line", SD: mn.spread.perKg, Text: "standard error of ln clearance of one new animal at this mass; the scatter of the table only"}}
+	} else {
+		d.Parts = n.rangeParts(c, i)
+	}
 	return d
 }
 
@@ -242,6 +247,8 @@ func (n *numbers) planRecord(c *Case, i, k int) Plan {
 		out.Remark = "bracket: by volume (matches the peak) and by clearance (matches the area under the curve); start at the low end"
 	case PlanInfusion:
 		out.Remark = "equal steady concentration"
+	case PlanFitted:
+		out.Remark = "from the fitted clearance; average against the one that scaling keeps"
 	}
 	return out
 }
@@ -266,6 +273,10 @@ func (n *numbers) amountAt(c *Case, i, k int, w metabolic.Mass) Pair {
 		dose = Pair{d[0] * math.Min(1, s), d[1] * math.Max(1, s)}
 	case PlanSameDose:
 		dose = d
+	case PlanFitted:
+		if at, err := n.fit.record.clearanceLine().At(float64(w)); err == nil {
+			dose = scale(p.dose, at.Value/n.fit.clear*float64(c.Patient.Mass.Middle/w))
+		}
 	case PlanClock:
 		dose = scale(d, s*p.interval/float64(c.Models[i].Regimen.Interval.Hours))
 	default:
@@ -378,10 +389,13 @@ func (n *numbers) drafted(c *Case, cautions []Caution) *Drafted {
 	if mn.plan().name == PlanOnce {
 		about = scale(m.Regimen.PerKg, mn.s)
 	}
-	d.Range90Amount = rangeAbout(scale(about, w), mn.spread.amount, z90)
-	d.Range50Amount = rangeAbout(scale(about, w), mn.spread.amount, z50)
+	d.Range90Amount = rangeAbout(scale(about, w), mn.spread.amount, mn.z90)
+	d.Range50Amount = rangeAbout(scale(about, w), mn.spread.amount, mn.z50)
 	if mn.chosenByCase {
 		d.ChosenBy = "case"
+	}
+	if n.fit != nil {
+		d.ChosenBy = "fit"
 	}
 	d.Why = n.planReason(c, i)
 	if len(cautions) > 0 {
@@ -395,6 +409,8 @@ func (n *numbers) planReason(c *Case, i int) string {
 	mn := &n.models[i]
 	s := metabolic.Significant(mn.s, 3)
 	switch {
+	case mn.plan().name == PlanFitted:
+		return "from the line fitted to the data of the table, at the model's average concentration or the one given; the scaled plans stand beside it"
 	case mn.chosenByCase:
 		return "the case names this plan"
 	case mn.plan().name == PlanOnce:
@@ -419,6 +435,9 @@ func (n *numbers) meaning(c *Case, i int) string {
 		return metabolic.FormatDosePerKg(x, u.Unit, u.Interval.Kind == metabolic.Infusion)
 	}
 	name, text, _ := mn.spread.record.text()
+	if n.fit != nil && i == n.from {
+		name, text = "of the table alone", fmt.Sprintf("prediction interval of the line fitted to %d animals", n.fit.record.N)
+	}
 	level := "average blood level"
 	at := ""
 	if mn.plan().name == PlanOnce {

@@ -57,6 +57,9 @@ type CaseInput struct {
 	Target     TargetInput      `json:"target,omitzero"`
 	Proposed   ProposedInput    `json:"proposed,omitzero"`
 	Overrides  []NamedEntry     `json:"overrides,omitempty"`
+
+	// Fit is set by the command fit, never by a case file.
+	Fit *FitCase `json:"fit,omitempty"`
 }
 
 // PatientInput is the animal in front of the veterinarian.

@@ -50,6 +50,10 @@ func (n *numbers) steps(c *Case, i int) []Step {
 		return s.steps
 	}
 	doseSteps(s, c, m)
+	if n.fit != nil && i == n.from {
+		n.fitSteps(s, c)
+		return s.steps
+	}
 	n.planSteps(s, c, i)
 	n.rangeSteps(s, c, i)
 	return s.steps

@@ -1,7 +1,8 @@
-// Every formula of this file is built from terms of one sign, so that nothing
-// cancels when the rate constants of absorption and elimination meet, or when
-// an interval is a tiny or a huge part of the half-life. The identities used
-// for that are stated where they are used; no dose is ever added in a loop.
+// The formulas of this file are arranged so that nothing cancels when the rate
+// constants of absorption and elimination meet, or when an interval is a tiny
+// or a huge part of the half-life: sums of terms of one sign where there are
+// any, a series where there are none. The identities stand where they are
+// used. No dose is ever added in a loop.
 
 package dose
 

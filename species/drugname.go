@@ -182,13 +182,14 @@ type nearName struct {
 	class   bool
 }
 
-// nearNames are the names of drugs and classes that the hazard table is about.
+// nearNames are the names of drugs and classes that the hazard table is about,
+// but for the shortest, which too many words are near to.
 var nearNames = sync.OnceValue(func() []nearName {
 	var out []nearName
 	for i, index := range []string{drugsIndex, drugClassesIndex} {
 		for l := range lines(index) {
 			key, _, _ := strings.Cut(l, "\t")
-			if strings.HasSuffix(l, "\thazard") && len(key) >= 5 {
+			if strings.HasSuffix(l, "\thazard") && len(key) >= 6 {
 				out = append(out, nearName{key, letters(key), l, i == 1})
 			}
 		}

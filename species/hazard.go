@@ -59,7 +59,9 @@ type hazardBook struct {
 	ofClass map[string][]int // class: rows about one drug of it
 }
 
-var hazards = sync.OnceValue(func() *hazardBook {
+var hazards = sync.OnceValue(readHazards)
+
+func readHazards() *hazardBook {
 	b := &hazardBook{byDrug: make(map[string][]int), byClass: make(map[string][]int), ofClass: make(map[string][]int)}
 	for c := range records(hazardsTable) {
 		h := Hazard{
@@ -87,7 +89,7 @@ var hazards = sync.OnceValue(func() *hazardBook {
 		}
 	}
 	return b
-})
+}
 
 // cell splits a cell that holds several values.
 func cell(s string) []string {

@@ -11,12 +11,12 @@ import (
 	"golang.org/x/image/math/fixed"
 	"gonum.org/v1/plot/font"
 
-	"tayra/reports/internal/letters"
+	"tayra/reports/internal/alphabet"
 )
 
 //go:generate go run ./internal/cutfont -dir fonts
 
-// The two fonts are DejaVu Sans cut down to the letters of package letters;
+// The two fonts are DejaVu Sans cut down to the letters of package alphabet;
 // their licence lies beside them. They are embedded as strings because the PDF
 // library writes into the bytes that it is given: []byte(f.data) is then the
 // copy that each document needs anyway, and nobody can spoil the original.
@@ -81,7 +81,7 @@ func (f *fontFace) widths() *[1 << 16]uint16 {
 		perEm := parsed.UnitsPerEm()
 		table := new([1 << 16]uint16)
 		var buf sfnt.Buffer
-		for _, b := range letters.Blocks {
+		for _, b := range alphabet.Blocks {
 			for r := b.First; r <= b.Last; r++ {
 				glyph, err := parsed.GlyphIndex(&buf, r)
 				if err != nil || glyph == 0 {

@@ -9,7 +9,7 @@ import (
 	"golang.org/x/image/font/sfnt"
 	"golang.org/x/image/math/fixed"
 
-	"tayra/reports/internal/letters"
+	"tayra/reports/internal/alphabet"
 )
 
 // What the layout measures is what the PDF library writes into the file as
@@ -25,7 +25,7 @@ func TestWidthsAgreeWithThePDF(t *testing.T) {
 	}{{"", &sansRegular}, {"B", &sansBold}} {
 		pdf.SetFont("sans", face.style, 10)
 		n := 0
-		for _, r := range letters.All() {
+		for _, r := range alphabet.All() {
 			if !face.face.has(r) {
 				continue
 			}
@@ -61,7 +61,7 @@ func TestLettersHaveShapes(t *testing.T) {
 			return fmt.Sprint(segments)
 		}
 		box := outline(0)
-		for _, r := range letters.All() {
+		for _, r := range alphabet.All() {
 			glyph, err := face.font().GlyphIndex(nil, r)
 			if err != nil || glyph == 0 || unicode.IsSpace(r) || unicode.Is(unicode.Zs, r) {
 				continue

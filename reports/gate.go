@@ -7,7 +7,7 @@ import (
 
 	"golang.org/x/text/unicode/norm"
 
-	"tayra/reports/internal/letters"
+	"tayra/reports/internal/alphabet"
 )
 
 // LetterError is a text that cannot be put on paper as it was written, with
@@ -69,7 +69,7 @@ func isPlain(s string) bool {
 // unprintable says what is wrong with the first letter of rest, and what to
 // write; both are empty when the letter can be printed.
 func unprintable(r rune, rest string) (what, instead string) {
-	if ' ' <= r && r <= '~' || letters.Printable(r) && sansRegular.has(r) {
+	if ' ' <= r && r <= '~' || alphabet.Printable(r) && sansRegular.has(r) {
 		return "", ""
 	}
 	code := fmt.Sprintf("U+%04X", r)
@@ -93,7 +93,7 @@ func unprintable(r rune, rest string) (what, instead string) {
 		return "the accent " + code + " has no single letter together with the one before it", "write that letter without the accent"
 	case r > 0xFFFF:
 		return fmt.Sprintf("%q (%s) cannot be printed", r, code), "write it in words"
-	case unicode.IsLetter(r) && !unicode.In(r, letters.Scripts...):
+	case unicode.IsLetter(r) && !unicode.In(r, alphabet.Scripts...):
 		return fmt.Sprintf("%q (%s) is not a Latin, Greek or Cyrillic letter", r, code), "write it in one of these scripts"
 	}
 	return fmt.Sprintf("%q (%s) is not in the fonts of the worksheet", r, code), "write it in words"

@@ -9,7 +9,7 @@ import (
 	"golang.org/x/text/unicode/norm"
 	"pgregory.net/rapid"
 
-	"tayra/reports/internal/letters"
+	"tayra/reports/internal/alphabet"
 )
 
 func TestCheckTextAccepts(t *testing.T) {
@@ -131,7 +131,7 @@ func TestCheckTextEveryCodePoint(t *testing.T) {
 			}
 		}
 	}
-	if all := len(letters.All()); passed < 2000 || passed > all+100 {
+	if all := len(alphabet.All()); passed < 2000 || passed > all+100 {
 		t.Errorf("%d code points pass; the list holds %d", passed, all)
 	}
 }

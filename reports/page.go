@@ -7,8 +7,8 @@ import (
 
 // The paper writers work in three steps that never mix. A flow of blocks
 // (pageblock.go, pagetable.go) breaks every text into lines and turns every
-// block into strips, thin slices of the page that are never split. Then
-// pageflow.go deals the strips out on pages, so the number of pages is known
+// block into bands, thin slices of the page that are never split. Then
+// pageflow.go deals the bands out on pages, so the number of pages is known
 // before anything is drawn. Then pagedraw.go draws each page once.
 //
 // All lengths are points (1/72 inch); y runs downwards.
@@ -129,15 +129,15 @@ func (d *document) admit(runs []run) []run {
 	return runs
 }
 
-// strip is a slice of the page, as wide as the text, that is never split.
-type strip struct {
+// band is a slice of the page, as wide as the text, that is never split.
+type band struct {
 	gap    float64 // space above it, dropped at the top of a page
 	height float64
-	keep   bool // stays on the page of the next strip
+	keep   bool // stays on the page of the next band
 
-	labels []label
+	labels []placedText
 	shapes []shape
-	figure *figure
+	figure *figureArea
 	frame  *frame
 	head   *tableHead
 
@@ -147,21 +147,21 @@ type strip struct {
 	ruleWidth float64
 }
 
-// label is one stretch of text in one size and weight. x is counted from the
-// left edge of the page, base from the top of the strip.
-type label struct {
+// placedText is one stretch of text in one size and weight. x is counted from the
+// left edge of the page, base from the top of the band.
+type placedText struct {
 	x, base, size float64
 	bold          bool
 	text          string
 }
 
-// frame is a box drawn around all strips that name it.
+// frame is a box drawn around all bands that name it.
 type frame struct {
 	x, width, line float64
 }
 
 // tableHead is what is set again at the top when a table runs over a page.
 type tableHead struct {
-	strips []strip
+	bands  []band
 	height float64
 }

@@ -57,56 +57,56 @@ func samplePlot(t testing.TB) *plot.Plot {
 func sampleDocument(t testing.TB, paper Paper) *document {
 	d := newDocument(paper)
 	d.head = func(f *flow, page, pages int) {
-		f.split(style{size: sizeSmall}, []run{bold("LW-0412"), plain("  Marisol, giant anteater, 41 kg (weighed), 2026-11-30")}, []run{pageOf(page, pages)})
+		f.split(paraStyle{size: sizeSmall}, []run{bold("LW-0412"), plain("  Marisol, giant anteater, 41 kg (weighed), 2026-11-30")}, []run{pageOf(page, pages)})
 		f.rule(rulerThin)
 	}
 	d.foot = func(f *flow, page, pages int) {
 		f.rule(rulerThin)
-		f.paragraph(style{size: sizeSmall, gap: -1}, bold("Draft; not a prescription."), plain(" For the judgement of a licensed veterinarian. Local law on off-label use, controlled drugs and food animals applies."))
-		f.split(style{size: sizeSmall, gap: -1}, []run{plain("Larkmoor Wildlife Hospital (invented)")}, []run{plain("tayra 1, record 4f9a 2c10")})
+		f.paragraph(paraStyle{size: sizeSmall, gap: -1}, bold("Draft; not a prescription."), plain(" For the judgement of a licensed veterinarian. Local law on off-label use, controlled drugs and food animals applies."))
+		f.split(paraStyle{size: sizeSmall, gap: -1}, []run{plain("Larkmoor Wildlife Hospital (invented)")}, []run{plain("tayra 1, record 4f9a 2c10")})
 	}
 	f := d.body
 	f.box(func(f *flow) {
-		f.paragraph(style{size: sizeDraft}, bold("examplicillin 334 mg (6.7 mL) under the skin every 12 hours"))
+		f.paragraph(paraStyle{size: sizeDraft}, bold("examplicillin 334 mg (6.7 mL) under the skin every 12 hours"))
 		f.para(bold("8.14 mg/kg."), plain(" As likely as not the model's exposure lies between 3.5 to 18.9 mg/kg, nine times in ten between 1.04 to 63.6 mg/kg. A second sentence runs on so that the paragraph turns over: 10 mg/kg, 20 mg/kg, 30 mg/kg, 40 mg/kg, 50 mg/kg, 60 mg/kg, 70 mg/kg."))
 		f.para(bold("Worst caution: warn."))
 	})
-	f.pairs(2, pair{"Species", []run{plain("Myrmecophaga tridactyla")}}, pair{"Mass", []run{plain("41 kg, weighed")}},
-		pair{"Prepared by", []run{plain("duty veterinarian")}}, pair{"Condition", []run{plain("dehydrated; a long note on the condition that turns over at the edge of its column and again")}},
-		pair{"Basis", []run{plain("group")}})
+	f.pairs(2, keyValue{"Species", []run{plain("Myrmecophaga tridactyla")}}, keyValue{"Mass", []run{plain("41 kg, weighed")}},
+		keyValue{"Prepared by", []run{plain("duty veterinarian")}}, keyValue{"Condition", []run{plain("dehydrated; a long note on the condition that turns over at the edge of its column and again")}},
+		keyValue{"Basis", []run{plain("group")}})
 	f.heading("Cautions")
-	f.item(item{mark: markStop, tick: true, text: []run{bold("Stop. "), plain("The drug is on the list for this order of animals and no dose is drafted from this model at all, whatever the other cautions say about it, until it is overridden in writing.")}, under: []run{plain("lethal in 4 of 5 reports")}})
-	f.item(item{mark: markWarn, tick: true, text: []run{bold("Warn. "), plain("The bases disagree by 2.92 fold.")}, under: []run{plain("ratio 2.92")}})
-	f.item(item{mark: markNote, indent: 2 * indentMark, text: []run{bold("Note. "), plain("The model's dose is a range.")}})
-	f.item(item{tick: true, text: []run{plain("Second check done")}})
-	f.bullet(style{}, plain("A bullet with text."))
-	f.bullet(style{}, plain("Another bullet, long enough to turn over at the right edge of the page so that its second line hangs under the first and not under the dot itself."))
+	f.item(markedItem{mark: markStop, tick: true, text: []run{bold("Stop. "), plain("The drug is on the list for this order of animals and no dose is drafted from this model at all, whatever the other cautions say about it, until it is overridden in writing.")}, under: []run{plain("lethal in 4 of 5 reports")}})
+	f.item(markedItem{mark: markWarn, tick: true, text: []run{bold("Warn. "), plain("The bases disagree by 2.92 fold.")}, under: []run{plain("ratio 2.92")}})
+	f.item(markedItem{mark: markNote, indent: 2 * indentMark, text: []run{bold("Note. "), plain("The model's dose is a range.")}})
+	f.item(markedItem{tick: true, text: []run{plain("Second check done")}})
+	f.bullet(paraStyle{}, plain("A bullet with text."))
+	f.bullet(paraStyle{}, plain("Another bullet, long enough to turn over at the right edge of the page so that its second line hangs under the first and not under the dot itself."))
 	f.heading("The plans side by side")
-	f.table(table{columns: []column{{head: "Plan", grow: 1}, {head: "Dose mg/kg", align: alignDecimal}, {head: "Each time", align: alignDecimal}, {head: "Interval"}, {head: "Daily", align: alignRight}},
-		rows: []row{
+	f.table(pageTable{columns: []tableColumn{{head: "Plan", grow: 1}, {head: "Dose mg/kg", align: alignDecimal}, {head: "Each time", align: alignDecimal}, {head: "Interval"}, {head: "Daily", align: alignRight}},
+		rows: []tableRow{
 			{cells: [][]run{{bold("same interval (drafted)")}, {bold("8.14")}, {bold("334 mg")}, {plain("12 h")}, {plain("16.3")}}},
-			{cells: texts("same dose", "10", "410.5 mg", "14.7 h", "16.3")},
-			{cells: texts("clock", "10.25", "1,420 mg", "12 h", "20.5"), rule: true},
-			{cells: texts("both adjusted", "0.9", "37 mg", "every 24 hours", "0.9")},
-			{cells: texts("no plan", "none", "none", "—", "none"), rule: true},
+			{cells: cellTexts("same dose", "10", "410.5 mg", "14.7 h", "16.3")},
+			{cells: cellTexts("clock", "10.25", "1,420 mg", "12 h", "20.5"), rule: true},
+			{cells: cellTexts("both adjusted", "0.9", "37 mg", "every 24 hours", "0.9")},
+			{cells: cellTexts("no plan", "none", "none", "—", "none"), rule: true},
 		}})
-	f.table(table{size: sizeSmall, columns: []column{{head: "Source"}, {head: "What it says, in a column that has to give way to the others and turn over"}, {head: "Note"}},
-		rows: []row{
-			{cells: texts("kleiber1947", "70 × M⁰·⁷⁵ kcal/day over mammals from 0.02 kg to 600 kg; the constants were fitted with mass in kg and the rate in kcal/day, a long description follows here to fill the cell with more words", "from memory")},
-			{cells: texts("https://example.org/a/very/long/address/that/has/no/space/in/it/and/must/be/broken/somewhere/or/it/runs/off/the/page", "plain", "measured at 30 °C, in the thermoneutral zone")},
+	f.table(pageTable{size: sizeSmall, columns: []tableColumn{{head: "Source"}, {head: "What it says, in a column that has to give way to the others and turn over"}, {head: "Note"}},
+		rows: []tableRow{
+			{cells: cellTexts("kleiber1947", "70 × M⁰·⁷⁵ kcal/day over mammals from 0.02 kg to 600 kg; the constants were fitted with mass in kg and the rate in kcal/day, a long description follows here to fill the cell with more words", "from memory")},
+			{cells: cellTexts("https://example.org/a/very/long/address/that/has/no/space/in/it/and/must/be/broken/somewhere/or/it/runs/off/the/page", "plain", "measured at 30 °C, in the thermoneutral zone")},
 		}})
 	f.heading("Concentrations")
 	f.figure(150, func(c vg.CanvasSizer) { samplePlot(t).Draw(draw.New(c)) })
 	f.keepNext()
-	f.paragraph(style{size: sizeSmall, center: true}, plain("Solid: model. Dashed: drafted."))
+	f.paragraph(paraStyle{size: sizeSmall, center: true}, plain("Solid: model. Dashed: drafted."))
 	f.heading("Steps")
 	for i := 1; i <= 9; i++ {
 		f.step(slateStep{i, "Ratio of the metabolic rates", "R = (M ÷ M₀)⁰·⁷⁵", "(41 kg ÷ 18 kg)⁰·⁷⁵ = 2.2778⁰·⁷⁵", "1.8541", "group line for placental mammals, row 12; the exponent and its spread from the fit over 637 species"})
 	}
 	f.heading("A long table")
-	long := table{columns: []column{{head: "No.", align: alignRight}, {head: "Time"}, {head: "Concentration", align: alignDecimal, grow: 1}}}
+	long := pageTable{columns: []tableColumn{{head: "No.", align: alignRight}, {head: "Time"}, {head: "Concentration", align: alignDecimal, grow: 1}}}
 	for i := range 60 {
-		long.rows = append(long.rows, row{cells: texts(fmt.Sprint(i+1), fmt.Sprintf("%d h", i), fmt.Sprintf("%.3g mg/L", 33*math.Exp(-float64(i)/7))), rule: i%10 == 0})
+		long.rows = append(long.rows, tableRow{cells: cellTexts(fmt.Sprint(i+1), fmt.Sprintf("%d h", i), fmt.Sprintf("%.3g mg/L", 33*math.Exp(-float64(i)/7))), rule: i%10 == 0})
 	}
 	f.table(long)
 	f.heading("Signature")
@@ -139,7 +139,7 @@ func laidOut(t testing.TB, d *document) layout {
 func pageText(page []placing) []string {
 	var out []string
 	for _, p := range page {
-		for _, l := range p.strip.labels {
+		for _, l := range p.band.labels {
 			out = append(out, l.text)
 		}
 	}
@@ -149,9 +149,9 @@ func pageText(page []placing) []string {
 // checkPages holds a layout to what must be true of any.
 func checkPages(t interface{ Fatalf(string, ...any) }, d *document, l layout) {
 	width, _ := d.paper.Size()
-	next := 0 // in d.body.strips
+	next := 0 // in d.body.bands
 	for n, page := range l.pages {
-		if len(page) == 0 && len(d.body.strips) > 0 {
+		if len(page) == 0 && len(d.body.bands) > 0 {
 			t.Fatalf("page %d is empty", n+1)
 		}
 		bottom := 0.0
@@ -160,11 +160,11 @@ func checkPages(t interface{ Fatalf(string, ...any) }, d *document, l layout) {
 			if p.y < bottom-1e-6 {
 				t.Fatalf("page %d: %q lies on what stands above it", n+1, pageText([]placing{p}))
 			}
-			bottom = p.y + p.strip.height
+			bottom = p.y + p.band.height
 			if bottom > l.height+1e-6 {
 				t.Fatalf("page %d: %q lies below the body", n+1, pageText([]placing{p}))
 			}
-			for _, label := range p.strip.labels {
+			for _, label := range p.band.labels {
 				right := label.x + points(sans(label.bold).units(label.text), label.size)
 				if label.x < marginX-1e-6 || right > width-marginX+1e-6 {
 					t.Fatalf("page %d: %q runs from %.1f to %.1f", n+1, label.text, label.x, right)
@@ -172,31 +172,31 @@ func checkPages(t interface{ Fatalf(string, ...any) }, d *document, l layout) {
 				if label.size < sizeSmall {
 					t.Fatalf("%q is set in %.1f points", label.text, label.size)
 				}
-				if label.base-label.size > p.strip.height || label.base+0.236*label.size > p.strip.height+0.1*label.size {
-					t.Fatalf("%q hangs out of its strip: base %.1f of %.1f", label.text, label.base, p.strip.height)
+				if label.base-label.size > p.band.height || label.base+0.236*label.size > p.band.height+0.1*label.size {
+					t.Fatalf("%q hangs out of its band: base %.1f of %.1f", label.text, label.base, p.band.height)
 				}
 			}
-			for i, a := range p.strip.labels {
-				for _, b := range p.strip.labels[i+1:] {
+			for i, a := range p.band.labels {
+				for _, b := range p.band.labels[i+1:] {
 					ar, br := a.x+points(sans(a.bold).units(a.text), a.size), b.x+points(sans(b.bold).units(b.text), b.size)
 					if a.x < br-1e-6 && b.x < ar-1e-6 {
 						t.Fatalf("%q and %q lie on each other", a.text, b.text)
 					}
 				}
 			}
-			// Every strip of the body once and in order; repeated heads apart.
-			if heads && next < len(d.body.strips) && p.strip.isHeadOf(&d.body.strips[next]) {
+			// Every band of the body once and in order; repeated heads apart.
+			if heads && next < len(d.body.bands) && p.band.isHeadOf(&d.body.bands[next]) {
 				continue
 			}
 			heads = false
-			if p.strip != &d.body.strips[next] {
+			if p.band != &d.body.bands[next] {
 				t.Fatalf("page %d: %q is out of order", n+1, pageText([]placing{p}))
 			}
 			next++
 		}
 	}
-	if next != len(d.body.strips) {
-		t.Fatalf("%d of %d strips are on paper", next, len(d.body.strips))
+	if next != len(d.body.bands) {
+		t.Fatalf("%d of %d bands are on paper", next, len(d.body.bands))
 	}
 }
 
@@ -220,10 +220,10 @@ func TestSampleOnBothPapers(t *testing.T) {
 	}
 }
 
-func stacked(strips []strip) []placing {
+func stacked(bands []band) []placing {
 	var out []placing
-	for i := range strips {
-		out = append(out, placing{strip: &strips[i]})
+	for i := range bands {
+		out = append(out, placing{band: &bands[i]})
 	}
 	return out
 }
@@ -239,7 +239,7 @@ func TestPageCount(t *testing.T) {
 	} {
 		d := newDocument(A4)
 		for range c.lines {
-			d.body.strips = append(d.body.strips, strip{height: body / float64(c.perPage)})
+			d.body.bands = append(d.body.bands, band{height: body / float64(c.perPage)})
 		}
 		l := laidOut(t, d)
 		if len(l.pages) != c.pages {
@@ -253,7 +253,7 @@ func TestGapsAreDroppedAtTheTop(t *testing.T) {
 	body := height - 2*marginY - 2*marginA
 	d := newDocument(A4)
 	for range 4 {
-		d.body.strips = append(d.body.strips, strip{gap: body / 10, height: body * 0.45})
+		d.body.bands = append(d.body.bands, band{gap: body / 10, height: body * 0.45})
 	}
 	l := laidOut(t, d)
 	if len(l.pages) != 2 || l.pages[1][0].y != 0 || math.Abs(l.pages[1][1].y-body*0.55) > 1e-6 {
@@ -274,7 +274,7 @@ func TestHeadingStaysWithWhatFollows(t *testing.T) {
 			if kind == "text" {
 				d.body.para(plain(strings.Repeat("first second third ", 40)))
 			} else {
-				d.body.table(table{columns: []column{{head: "Head"}}, rows: []row{{cells: texts("first")}, {cells: texts("second")}, {cells: texts("third")}, {cells: texts("fourth")}}})
+				d.body.table(pageTable{columns: []tableColumn{{head: "Head"}}, rows: []tableRow{{cells: cellTexts("first")}, {cells: cellTexts("second")}, {cells: cellTexts("third")}, {cells: cellTexts("fourth")}}})
 			}
 			l := laidOut(t, d)
 			checkPages(t, d, l)
@@ -294,9 +294,9 @@ func TestParagraphLeavesNoLineAlone(t *testing.T) {
 		for range filler {
 			d.body.para(plain("filler"))
 		}
-		start := len(d.body.strips)
+		start := len(d.body.bands)
 		d.body.para(plain(strings.Repeat("ten words to fill up a line of the page ", 20)))
-		lines := len(d.body.strips) - start
+		lines := len(d.body.bands) - start
 		if lines < 6 {
 			t.Fatalf("only %d lines", lines)
 		}
@@ -304,7 +304,7 @@ func TestParagraphLeavesNoLineAlone(t *testing.T) {
 		for _, page := range l.pages {
 			n := 0
 			for _, p := range page {
-				if !slices.ContainsFunc(p.strip.labels, func(l label) bool { return l.text == "filler" }) {
+				if !slices.ContainsFunc(p.band.labels, func(l placedText) bool { return l.text == "filler" }) {
 					n++
 				}
 			}
@@ -322,9 +322,9 @@ func TestTogether(t *testing.T) {
 			d.body.para(plain("filler"))
 		}
 		d.body.step(slateStep{7, "Title", "formula of it", strings.Repeat("numbers of it ", 30), "result of it", "source of it"})
-		d.body.item(item{mark: markWarn, tick: true, text: []run{plain(strings.Repeat("caution ", 50))}, under: []run{plain("its numbers")}})
+		d.body.item(markedItem{mark: markWarn, tick: true, text: []run{plain(strings.Repeat("caution ", 50))}, under: []run{plain("its numbers")}})
 		d.body.box(func(f *flow) {
-			f.paragraph(style{size: sizeDraft}, plain("boxed dose"))
+			f.paragraph(paraStyle{size: sizeDraft}, plain("boxed dose"))
 			f.para(plain("boxed range"))
 		})
 		l := laidOut(t, d)
@@ -345,7 +345,7 @@ func TestTallerThanThePage(t *testing.T) {
 	words := strings.Repeat("a long reason ", 2500)
 	d := newDocument(A4)
 	d.body.box(func(f *flow) { f.para(plain(words)) })
-	d.body.table(table{columns: []column{{head: "Name"}, {head: "Reason"}}, rows: []row{{cells: texts("x", words)}, {cells: texts("y", "short")}}})
+	d.body.table(pageTable{columns: []tableColumn{{head: "Name"}, {head: "Reason"}}, rows: []tableRow{{cells: cellTexts("x", words)}, {cells: cellTexts("y", "short")}}})
 	l := laidOut(t, d)
 	checkPages(t, d, l)
 	if len(l.pages) < 4 {
@@ -393,7 +393,7 @@ func TestPagesLaws(t *testing.T) {
 		word := func() run {
 			return run{rapid.SampledFrom(texts).Draw(t, "text"), rapid.Bool().Draw(t, "bold")}
 		}
-		d.head = func(f *flow, page, pages int) { f.split(style{}, []run{plain("head")}, []run{pageOf(page, pages)}) }
+		d.head = func(f *flow, page, pages int) { f.split(paraStyle{}, []run{plain("head")}, []run{pageOf(page, pages)}) }
 		f := d.body
 		for range rapid.IntRange(0, 25).Draw(t, "blocks") {
 			switch rapid.IntRange(0, 9).Draw(t, "kind") {
@@ -402,27 +402,27 @@ func TestPagesLaws(t *testing.T) {
 			case 1:
 				f.heading("Heading")
 			case 2:
-				var rows []row
+				var rows []tableRow
 				for range rapid.IntRange(0, 30).Draw(t, "rows") {
-					rows = append(rows, row{cells: [][]run{{word()}, {word()}, {word()}}, rule: rapid.Bool().Draw(t, "rule")})
+					rows = append(rows, tableRow{cells: [][]run{{word()}, {word()}, {word()}}, rule: rapid.Bool().Draw(t, "rule")})
 				}
-				f.table(table{columns: []column{{head: "Name"}, {head: "Figure", align: align(rapid.IntRange(0, 2).Draw(t, "align"))}, {head: "Note", grow: 1}}, rows: rows})
+				f.table(pageTable{columns: []tableColumn{{head: "Name"}, {head: "Figure", align: cellAlign(rapid.IntRange(0, 2).Draw(t, "align"))}, {head: "Note", grow: 1}}, rows: rows})
 			case 3:
-				f.box(func(f *flow) { f.paragraph(style{size: sizeDraft}, word()); f.para(word()) })
+				f.box(func(f *flow) { f.paragraph(paraStyle{size: sizeDraft}, word()); f.para(word()) })
 			case 4:
 				f.step(slateStep{1, "Title", word().text, word().text, "1.85", word().text})
 			case 5:
-				f.item(item{mark: mark(rapid.IntRange(0, 3).Draw(t, "mark")), tick: rapid.Bool().Draw(t, "tick"), text: []run{word()}, under: []run{word()}})
+				f.item(markedItem{mark: mark(rapid.IntRange(0, 3).Draw(t, "mark")), tick: rapid.Bool().Draw(t, "tick"), text: []run{word()}, under: []run{word()}})
 			case 6:
 				f.figure(rapid.Float64Range(10, 400).Draw(t, "height"), func(vg.CanvasSizer) {})
 			case 7:
-				f.pairs(rapid.IntRange(1, 3).Draw(t, "columns"), pair{"Key", []run{word()}}, pair{word().text, []run{word()}}, pair{"Key", nil})
+				f.pairs(rapid.IntRange(1, 3).Draw(t, "columns"), keyValue{"Key", []run{word()}}, keyValue{word().text, []run{word()}}, keyValue{"Key", nil})
 			case 8:
 				f.ruled(3)
 				f.keepNext()
 				f.signatures(2, "Name", "Date", word().text)
 			case 9:
-				f.bullet(style{}, word())
+				f.bullet(paraStyle{}, word())
 				f.space(10)
 			}
 		}

@@ -10,14 +10,14 @@ import (
 // flow is a column of blocks, set one under the other. Each method adds a
 // block.
 type flow struct {
-	doc    *document
-	x      float64
-	width  float64
-	strips []strip
+	doc   *document
+	x     float64
+	width float64
+	bands []band
 }
 
-// style is how a paragraph is set. The zero value is running text.
-type style struct {
+// paraStyle is how a paragraph is set. The zero value is running text.
+type paraStyle struct {
 	size   float64 // sizeBody when zero
 	gap    float64 // space above; gapBlock when zero, none when negative
 	indent float64 // of the whole paragraph
@@ -25,14 +25,14 @@ type style struct {
 	keep   bool // with the block that follows
 }
 
-func (s style) sized() float64 {
+func (s paraStyle) sized() float64 {
 	if s.size == 0 {
 		return sizeBody
 	}
 	return s.size
 }
 
-func (s style) above() float64 {
+func (s paraStyle) above() float64 {
 	switch {
 	case s.gap < 0:
 		return 0
@@ -43,11 +43,11 @@ func (s style) above() float64 {
 }
 
 // para adds a paragraph of running text.
-func (f *flow) para(runs ...run) { f.paragraph(style{}, runs...) }
+func (f *flow) para(runs ...run) { f.paragraph(paraStyle{}, runs...) }
 
 // paragraph adds a paragraph. A page break leaves at least two of its lines on
 // either side.
-func (f *flow) paragraph(st style, runs ...run) {
+func (f *flow) paragraph(st paraStyle, runs ...run) {
 	size := st.sized()
 	lines := f.lines(size, f.width-st.indent, f.doc.admit(runs))
 	for i, line := range lines {
@@ -55,7 +55,7 @@ func (f *flow) paragraph(st style, runs ...run) {
 		if st.center {
 			x += (f.width - st.indent - points(line.units, size)) / 2
 		}
-		s := strip{height: size * lineHeight, labels: appendLine(nil, line, x, size*lineBase, size)}
+		s := band{height: size * lineHeight, labels: appendLine(nil, line, x, size*lineBase, size)}
 		switch {
 		case i == 0:
 			s.gap = st.above()
@@ -66,7 +66,7 @@ func (f *flow) paragraph(st style, runs ...run) {
 		if i == len(lines)-1 {
 			s.keep = st.keep
 		}
-		f.strips = append(f.strips, s)
+		f.bands = append(f.bands, s)
 	}
 }
 
@@ -82,9 +82,9 @@ func thousandths(width, size float64) int { return int(width*1000/size + slack) 
 func points(units int, size float64) float64 { return float64(units) * size / 1000 }
 
 // appendLine appends the spans of a line that starts at x.
-func appendLine(labels []label, line textLine, x, base, size float64) []label {
+func appendLine(labels []placedText, line textLine, x, base, size float64) []placedText {
 	for _, s := range line.spans {
-		labels = append(labels, label{x: x + points(s.x, size), base: base, size: size, bold: s.bold, text: s.text})
+		labels = append(labels, placedText{x: x + points(s.x, size), base: base, size: size, bold: s.bold, text: s.text})
 	}
 	return labels
 }
@@ -93,28 +93,28 @@ func appendLine(labels []label, line textLine, x, base, size float64) []label {
 // under it in errors.
 func (f *flow) heading(text string) {
 	f.doc.naming(text)
-	n := len(f.strips)
-	f.paragraph(style{size: sizeHead, gap: gapHeading, keep: true}, bold(text))
-	for i := n; i < len(f.strips); i++ {
-		f.strips[i].keep = true
+	n := len(f.bands)
+	f.paragraph(paraStyle{size: sizeHead, gap: gapHeading, keep: true}, bold(text))
+	for i := n; i < len(f.bands); i++ {
+		f.bands[i].keep = true
 	}
-	f.strips = append(f.strips, strip{height: 3, keep: true, shapes: []shape{{kind: shapeRule, x: f.x, y: 1, w: f.width, line: rulerThin}}})
+	f.bands = append(f.bands, band{height: 3, keep: true, shapes: []shape{{kind: shapeRule, x: f.x, y: 1, w: f.width, line: rulerThin}}})
 }
 
 // space adds empty height, dropped at the top of a page.
 func (f *flow) space(h float64) {
-	f.strips = append(f.strips, strip{gap: h})
+	f.bands = append(f.bands, band{gap: h})
 }
 
 // rule adds a line across.
 func (f *flow) rule(thickness float64) {
-	f.strips = append(f.strips, strip{gap: 2, height: 2, shapes: []shape{{kind: shapeRule, x: f.x, y: 1, w: f.width, line: thickness}}})
+	f.bands = append(f.bands, band{gap: 2, height: 2, shapes: []shape{{kind: shapeRule, x: f.x, y: 1, w: f.width, line: thickness}}})
 }
 
 // keepNext keeps the block added last on the page of the one added next.
 func (f *flow) keepNext() {
-	if n := len(f.strips); n > 0 {
-		f.strips[n-1].keep = true
+	if n := len(f.bands); n > 0 {
+		f.bands[n-1].keep = true
 	}
 }
 
@@ -122,10 +122,10 @@ func (f *flow) keepNext() {
 func (f *flow) together(add func(*flow)) {
 	g := &flow{doc: f.doc, x: f.x, width: f.width}
 	add(g)
-	for i := range g.strips[:max(0, len(g.strips)-1)] {
-		g.strips[i].keep = true
+	for i := range g.bands[:max(0, len(g.bands)-1)] {
+		g.bands[i].keep = true
 	}
-	f.strips = append(f.strips, g.strips...)
+	f.bands = append(f.bands, g.bands...)
 }
 
 // box adds blocks with a frame around them, kept together.
@@ -134,20 +134,20 @@ func (f *flow) box(add func(*flow)) {
 	fr := &frame{x: f.x, width: f.width, line: rulerHeavy}
 	g := &flow{doc: f.doc, x: f.x + pad, width: f.width - 2*pad}
 	add(g)
-	f.strips = append(f.strips, strip{gap: gapBlock + 2, height: pad - 2, keep: true, frame: fr})
-	for i, s := range g.strips {
+	f.bands = append(f.bands, band{gap: gapBlock + 2, height: pad - 2, keep: true, frame: fr})
+	for i, s := range g.bands {
 		if i == 0 {
 			s.gap = 0
 		}
 		s.keep, s.frame = true, fr
-		f.strips = append(f.strips, s)
+		f.bands = append(f.bands, s)
 	}
-	f.strips = append(f.strips, strip{height: pad, frame: fr}, strip{gap: 3})
+	f.bands = append(f.bands, band{height: pad, frame: fr}, band{gap: 3})
 }
 
 // split adds a line or more with one text at the left and one, on one line, at
 // the right edge.
-func (f *flow) split(st style, left, right []run) {
+func (f *flow) split(st paraStyle, left, right []run) {
 	size := st.sized()
 	left, right = f.doc.admit(left), f.doc.admit(right)
 	natural, _ := f.doc.breaker.extent(right)
@@ -155,24 +155,24 @@ func (f *flow) split(st style, left, right []run) {
 	lines := f.lines(size, max(f.width-w-gapColumn, f.width/4), left)
 	rights := f.lines(size, f.width, right)
 	for i, line := range lines {
-		s := strip{height: size * lineHeight, keep: i < len(lines)-1, labels: appendLine(nil, line, f.x, size*lineBase, size)}
+		s := band{height: size * lineHeight, keep: i < len(lines)-1, labels: appendLine(nil, line, f.x, size*lineBase, size)}
 		if i == 0 {
 			s.gap = st.above()
 			s.labels = appendLine(s.labels, rights[0], f.x+f.width-points(rights[0].units, size), size*lineBase, size)
 		}
-		f.strips = append(f.strips, s)
+		f.bands = append(f.bands, s)
 	}
 }
 
-// pair is a name and what stands under it.
-type pair struct {
+// keyValue is a name and what stands under it.
+type keyValue struct {
 	key   string
 	value []run
 }
 
 // pairs adds names with their values, in the given number of columns, row by
 // row.
-func (f *flow) pairs(columns int, pairs ...pair) {
+func (f *flow) pairs(columns int, pairs ...keyValue) {
 	const size = sizeBody
 	width := (f.width - float64(columns-1)*2*gapColumn) / float64(columns)
 	keys := make([]float64, columns)
@@ -192,18 +192,18 @@ func (f *flow) pairs(columns int, pairs ...pair) {
 				cellLines{x: x, width: keys[c], lines: f.lines(size, keys[c], []run{plain(p.key)})},
 				cellLines{x: x + keys[c] + gapColumn, lines: f.lines(size, width-keys[c]-gapColumn, f.doc.admit(p.value))})
 		}
-		n := len(f.strips)
-		f.strips = appendRow(f.strips, row, size, 0)
+		n := len(f.bands)
+		f.bands = appendRow(f.bands, row, size, 0)
 		if i == 0 {
-			f.strips[n].gap = gapBlock
+			f.bands[n].gap = gapBlock
 		} else {
-			f.strips[n].gap = 1
+			f.bands[n].gap = 1
 		}
 	}
 }
 
-// item is a text with a mark or a box to tick, or both, before it.
-type item struct {
+// markedItem is a text with a mark or a box to tick, or both, before it.
+type markedItem struct {
 	mark   mark
 	tick   bool
 	text   []run
@@ -212,7 +212,7 @@ type item struct {
 }
 
 // item adds an item, kept together.
-func (f *flow) item(it item) {
+func (f *flow) item(it markedItem) {
 	const size = sizeBody
 	var marks []shape
 	x := f.x
@@ -227,24 +227,24 @@ func (f *flow) item(it item) {
 	}
 	indent := max(it.indent, x-f.x)
 	f.together(func(g *flow) {
-		g.paragraph(style{indent: indent, gap: 4}, it.text...)
-		g.strips[0].shapes = marks
+		g.paragraph(paraStyle{indent: indent, gap: 4}, it.text...)
+		g.bands[0].shapes = marks
 		if len(it.under) > 0 {
-			g.paragraph(style{indent: indent, gap: -1}, it.under...)
+			g.paragraph(paraStyle{indent: indent, gap: -1}, it.under...)
 		}
 	})
 }
 
 // bullet adds an item of a list.
-func (f *flow) bullet(st style, runs ...run) {
-	n := len(f.strips)
+func (f *flow) bullet(st paraStyle, runs ...run) {
+	n := len(f.bands)
 	size := st.sized()
 	st.indent += 10
 	if st.gap == 0 {
 		st.gap = 2
 	}
 	f.paragraph(st, runs...)
-	f.strips[n].shapes = []shape{{kind: shapeDot, x: f.x + st.indent - 8, y: size*lineBase - 0.37*size - 1.2, w: 2.4}}
+	f.bands[n].shapes = []shape{{kind: shapeDot, x: f.x + st.indent - 8, y: size*lineBase - 0.37*size - 1.2, w: 2.4}}
 }
 
 // slateStep is one step of a calculation as one writes it on a slate.
@@ -261,8 +261,8 @@ type slateStep struct {
 func (f *flow) step(s slateStep) {
 	const indent, column = 20, 62
 	f.together(func(g *flow) {
-		g.paragraph(style{indent: indent, gap: 6}, bold(s.title))
-		g.strips[0].labels = append(g.strips[0].labels, label{x: f.x, base: sizeBody * lineBase, size: sizeBody, bold: true, text: strconv.Itoa(s.number)})
+		g.paragraph(paraStyle{indent: indent, gap: 6}, bold(s.title))
+		g.bands[0].labels = append(g.bands[0].labels, placedText{x: f.x, base: sizeBody * lineBase, size: sizeBody, bold: true, text: strconv.Itoa(s.number)})
 		for _, part := range []struct {
 			name string
 			text run
@@ -276,7 +276,7 @@ func (f *flow) step(s slateStep) {
 				continue
 			}
 			x, w := f.x+indent+column, f.width-indent-column
-			g.strips = appendRow(g.strips, []cellLines{
+			g.bands = appendRow(g.bands, []cellLines{
 				{x: f.x + indent, lines: g.lines(sizeSmall, column, []run{plain(part.name)})},
 				{x: x, lines: g.lines(sizeBody, w, g.doc.admit([]run{part.text}))},
 			}, sizeBody, 0)
@@ -284,8 +284,8 @@ func (f *flow) step(s slateStep) {
 	})
 }
 
-// figure is a drawing of a fixed height.
-type figure struct {
+// figureArea is a drawing of a fixed height.
+type figureArea struct {
 	x, width float64
 	draw     func(vg.CanvasSizer)
 }
@@ -293,14 +293,14 @@ type figure struct {
 // figure adds a drawing as wide as the text. draw is called once, when the
 // page is drawn.
 func (f *flow) figure(height float64, draw func(vg.CanvasSizer)) {
-	f.strips = append(f.strips, strip{gap: gapBlock, height: height, figure: &figure{x: f.x, width: f.width, draw: draw}})
+	f.bands = append(f.bands, band{gap: gapBlock, height: height, figure: &figureArea{x: f.x, width: f.width, draw: draw}})
 }
 
 // ruled adds n empty lines to write on, kept together.
 func (f *flow) ruled(n int) {
 	const height = 22
 	for i := range n {
-		f.strips = append(f.strips, strip{height: height, keep: i < n-1,
+		f.bands = append(f.bands, band{height: height, keep: i < n-1,
 			shapes: []shape{{kind: shapeRule, x: f.x, y: height - 1, w: f.width, line: rulerHair}}})
 	}
 }
@@ -312,14 +312,14 @@ func (f *flow) signatures(columns int, names ...string) {
 	width := (f.width - float64(columns-1)*2*gapColumn) / float64(columns)
 	f.together(func(g *flow) {
 		for i := 0; i < len(names); i += columns {
-			line := strip{height: height}
+			line := band{height: height}
 			var row []cellLines
 			for c, name := range names[i:min(i+columns, len(names))] {
 				x := f.x + float64(c)*(width+2*gapColumn)
 				line.shapes = append(line.shapes, shape{kind: shapeRule, x: x, y: height - 1, w: width, line: rulerThin})
 				row = append(row, cellLines{x: x, lines: g.lines(sizeSmall, width, g.doc.admit([]run{plain(name)}))})
 			}
-			g.strips = appendRow(append(g.strips, line), row, sizeSmall, 0)
+			g.bands = appendRow(append(g.bands, line), row, sizeSmall, 0)
 		}
 	})
 }

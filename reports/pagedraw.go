@@ -115,8 +115,8 @@ func (p *pen) path(fill bool, xy ...float64) {
 	}
 }
 
-// strip draws a strip whose top lies at the height top of the page.
-func (p *pen) strip(s *strip, top float64) {
+// band draws a band whose top lies at the height top of the page.
+func (p *pen) band(s *band, top float64) {
 	for _, shape := range s.shapes {
 		shape.draw(p, top)
 	}
@@ -134,16 +134,16 @@ func (p *pen) strip(s *strip, top float64) {
 }
 
 // stacked draws a head or a foot whose top lies at the height top.
-func (p *pen) stacked(strips []strip, top float64) {
-	for i := range strips {
-		s := &strips[i]
+func (p *pen) stacked(bands []band, top float64) {
+	for i := range bands {
+		s := &bands[i]
 		if i > 0 {
 			top += s.gap
 		}
 		if s.ruleAbove > 0 {
 			p.rule(s.ruleX, top, s.ruleWidth, s.ruleAbove)
 		}
-		p.strip(s, top)
+		p.band(s, top)
 		top += s.height
 	}
 }
@@ -151,19 +151,19 @@ func (p *pen) stacked(strips []strip, top float64) {
 // placed draws the body of a page.
 func (p *pen) placed(page []placing, top float64) {
 	for i := 0; i < len(page); i++ {
-		s, y := page[i].strip, top+page[i].y
-		if s.ruleAbove > 0 && i > 0 && !page[i-1].strip.isHeadOf(s) {
+		s, y := page[i].band, top+page[i].y
+		if s.ruleAbove > 0 && i > 0 && !page[i-1].band.isHeadOf(s) {
 			p.rule(s.ruleX, y, s.ruleWidth, s.ruleAbove)
 		}
-		p.strip(s, y)
+		p.band(s, y)
 		// A frame that runs over a page is closed on each: an open end would
 		// not show that the box goes on.
-		if f := s.frame; f != nil && (i == 0 || page[i-1].strip.frame != f) {
+		if f := s.frame; f != nil && (i == 0 || page[i-1].band.frame != f) {
 			last := i
-			for last+1 < len(page) && page[last+1].strip.frame == f {
+			for last+1 < len(page) && page[last+1].band.frame == f {
 				last++
 			}
-			bottom := top + page[last].y + page[last].strip.height
+			bottom := top + page[last].y + page[last].band.height
 			p.lineWidth(f.line)
 			p.pdf.Rect(f.x, y, f.width, bottom-y, "D")
 		}
@@ -171,13 +171,13 @@ func (p *pen) placed(page []placing, top float64) {
 }
 
 // isHeadOf reports whether s is part of the repeated head of the table that
-// the strip row belongs to.
-func (s *strip) isHeadOf(row *strip) bool {
+// the band row belongs to.
+func (s *band) isHeadOf(row *band) bool {
 	if row.head == nil {
 		return false
 	}
-	for i := range row.head.strips {
-		if s == &row.head.strips[i] {
+	for i := range row.head.bands {
+		if s == &row.head.bands[i] {
 			return true
 		}
 	}

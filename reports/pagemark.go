@@ -17,8 +17,8 @@ const (
 	shapeDot       // a small filled circle, before the items of a list
 )
 
-// shape is a mark, a box or a rule inside a strip. x is counted from the left
-// edge of the page, y from the top of the strip; w is its width, and its
+// shape is a mark, a box or a rule inside a band. x is counted from the left
+// edge of the page, y from the top of the band; w is its width, and its
 // height where the shape is not a rule.
 type shape struct {
 	kind    mark

@@ -57,7 +57,7 @@ func (d *document) render(pr properties) ([]byte, error) {
 type layout struct {
 	top, height float64 // of the body
 	pages       [][]placing
-	heads, feet [][]strip
+	heads, feet [][]band
 }
 
 // layOut deals the body out on pages. The head and the foot may say how many
@@ -65,13 +65,13 @@ type layout struct {
 // done again with more room for them until they fit, which nearly always is
 // at once.
 func (d *document) layOut(height float64) (layout, error) {
-	one := func(m margin, page, pages int) []strip {
+	one := func(m margin, page, pages int) []band {
 		f := &flow{doc: d, x: d.body.x, width: d.body.width}
 		if m != nil {
 			d.naming("page margin")
 			m(f, page, pages)
 		}
-		return f.strips
+		return f.bands
 	}
 	headRoom, footRoom := stack(one(d.head, 1, 1)), stack(one(d.foot, 1, 1))
 	for range 4 {
@@ -81,7 +81,7 @@ func (d *document) layOut(height float64) (layout, error) {
 			return l, fmt.Errorf("head and foot leave %.0f points of the page; shorten the texts in them", l.height)
 		}
 		var err error
-		if l.pages, err = paginate(d.body.strips, l.height); err != nil {
+		if l.pages, err = paginate(d.body.bands, l.height); err != nil {
 			return l, err
 		}
 		head, foot := headRoom, footRoom

@@ -157,12 +157,12 @@ func TestRenderErrors(t *testing.T) {
 		{"letter in a paragraph", func(d *document) { d.body.heading("Sources"); d.body.para(plain("good "), plain("漢")) }, nil, []string{"Sources", "U+6F22"}},
 		{"letter in a cell", func(d *document) {
 			d.naming("model.source")
-			d.body.table(table{columns: []column{{head: "a"}}, rows: []row{{cells: texts("\u202e")}}})
+			d.body.table(pageTable{columns: []tableColumn{{head: "a"}}, rows: []tableRow{{cells: cellTexts("\u202e")}}})
 		}, nil, []string{"model.source", "U+202E"}},
-		{"letter in a table head", func(d *document) { d.body.table(table{columns: []column{{head: "🐾"}}}) }, nil, []string{"U+1F43E"}},
+		{"letter in a table head", func(d *document) { d.body.table(pageTable{columns: []tableColumn{{head: "🐾"}}}) }, nil, []string{"U+1F43E"}},
 		{"letter in a step", func(d *document) { d.body.step(slateStep{title: "t", substituted: "a\tb"}) }, nil, []string{"U+0009"}},
-		{"letter in an item", func(d *document) { d.body.item(item{text: []run{plain("ok")}, under: []run{plain("\x00")}}) }, nil, []string{"U+0000"}},
-		{"letter in a name", func(d *document) { d.body.pairs(1, pair{"م", nil}) }, nil, []string{"U+0645"}},
+		{"letter in an item", func(d *document) { d.body.item(markedItem{text: []run{plain("ok")}, under: []run{plain("\x00")}}) }, nil, []string{"U+0000"}},
+		{"letter in a name", func(d *document) { d.body.pairs(1, keyValue{"م", nil}) }, nil, []string{"U+0645"}},
 		{"letter under a line to sign", func(d *document) { d.body.signatures(1, "\ue000") }, nil, []string{"U+E000"}},
 		{"letter in the head", func(d *document) { d.head = func(f *flow, _, _ int) { f.para(plain("\ufeff")) } }, nil, []string{"page margin", "U+FEFF"}},
 		{"letter in a figure", func(d *document) {
@@ -253,26 +253,26 @@ func barePDF(lines [][]string) ([]byte, error) {
 func benchDocument() *document {
 	d := newDocument(A4)
 	d.head = func(f *flow, page, pages int) {
-		f.split(style{size: sizeSmall}, []run{bold("LW-0412"), plain("  Marisol, giant anteater, 41 kg (weighed), 2026-11-30")}, []run{pageOf(page, pages)})
+		f.split(paraStyle{size: sizeSmall}, []run{bold("LW-0412"), plain("  Marisol, giant anteater, 41 kg (weighed), 2026-11-30")}, []run{pageOf(page, pages)})
 		f.rule(rulerThin)
 	}
 	d.foot = func(f *flow, page, pages int) {
 		f.rule(rulerThin)
-		f.paragraph(style{size: sizeSmall, gap: -1}, bold("Draft; not a prescription."), plain(" For the judgement of a licensed veterinarian. Local law on off-label use, controlled drugs and food animals applies."))
+		f.paragraph(paraStyle{size: sizeSmall, gap: -1}, bold("Draft; not a prescription."), plain(" For the judgement of a licensed veterinarian. Local law on off-label use, controlled drugs and food animals applies."))
 	}
 	f := d.body
 	f.box(func(f *flow) {
-		f.paragraph(style{size: sizeDraft}, bold("examplicillin 334 mg (6.7 mL) under the skin every 12 hours"))
+		f.paragraph(paraStyle{size: sizeDraft}, bold("examplicillin 334 mg (6.7 mL) under the skin every 12 hours"))
 		f.para(bold("8.14 mg/kg."), plain(" Even odds 3.5 to 18.9 mg/kg; nine in ten 1.04 to 63.6 mg/kg."))
 	})
 	f.heading("Cautions")
 	for range 5 {
-		f.item(item{mark: markWarn, tick: true, text: []run{bold("Warn. "), plain("The bases disagree by 2.92 fold; the drafted dose under each basis stands below, with both ranges.")}})
+		f.item(markedItem{mark: markWarn, tick: true, text: []run{bold("Warn. "), plain("The bases disagree by 2.92 fold; the drafted dose under each basis stands below, with both ranges.")}})
 	}
 	f.heading("The plans side by side")
-	t := table{columns: []column{{head: "Plan", grow: 1}, {head: "Dose mg/kg", align: alignDecimal}, {head: "Each time", align: alignDecimal}, {head: "Interval"}, {head: "Daily", align: alignRight}}}
+	t := pageTable{columns: []tableColumn{{head: "Plan", grow: 1}, {head: "Dose mg/kg", align: alignDecimal}, {head: "Each time", align: alignDecimal}, {head: "Interval"}, {head: "Daily", align: alignRight}}}
 	for range 22 {
-		t.rows = append(t.rows, row{cells: texts("same interval", "8.14", "334 mg", "12 h", "16.3")})
+		t.rows = append(t.rows, tableRow{cells: cellTexts("same interval", "8.14", "334 mg", "12 h", "16.3")})
 	}
 	f.table(t)
 	f.heading("Steps")
@@ -288,7 +288,7 @@ func benchLines(t testing.TB) [][]string {
 	for _, page := range laidOut(t, benchDocument()).pages {
 		var lines []string
 		for _, p := range page {
-			if len(p.strip.labels) > 0 {
+			if len(p.band.labels) > 0 {
 				lines = append(lines, strings.Join(pageText([]placing{p}), " "))
 			}
 		}

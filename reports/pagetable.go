@@ -5,38 +5,38 @@ import (
 	"strings"
 )
 
-// align is how the cells of a column stand.
-type align int
+// cellAlign is how the cells of a column stand.
+type cellAlign int
 
 const (
-	alignLeft    align = iota
-	alignRight         // for figures of the same number of decimals
-	alignDecimal       // the decimal points of the first figures under each other
+	alignLeft    cellAlign = iota
+	alignRight             // for figures of the same number of decimals
+	alignDecimal           // the decimal points of the first figures under each other
 )
 
-// column is a column of a table.
-type column struct {
+// tableColumn is a column of a table.
+type tableColumn struct {
 	head  string
-	align align
+	align cellAlign
 	grow  float64 // its share of what width is left over
 }
 
-// row is a row of a table; a cell is a list of runs. Cells left out are empty.
-type row struct {
+// tableRow is a row of a table; a cell is a list of runs. Cells left out are empty.
+type tableRow struct {
 	cells [][]run
 	rule  bool // a rule above it, between groups of rows
 }
 
-// table is a table as wide as its text needs, or as the page where a column
+// pageTable is a table as wide as its text needs, or as the page where a column
 // grows.
-type table struct {
-	columns []column
-	rows    []row
+type pageTable struct {
+	columns []tableColumn
+	rows    []tableRow
 	size    float64 // sizeBody when zero
 }
 
-// texts makes cells of plain text.
-func texts(cells ...string) [][]run {
+// cellTexts makes cells of plain text.
+func cellTexts(cells ...string) [][]run {
 	out := make([][]run, len(cells))
 	for i, c := range cells {
 		out[i] = []run{plain(c)}
@@ -47,20 +47,19 @@ func texts(cells ...string) [][]run {
 // cellLines is the text of a cell, set.
 type cellLines struct {
 	x, width float64
-	align    align
+	align    cellAlign
 	lines    []textLine
-	size     float64 // that of the row when zero
 }
 
-// appendRow appends the strips of a row of cells: one strip a line, all kept
+// appendRow appends the bands of a row of cells: one band a line, all kept
 // together, so that a row is split only where no page could hold it.
-func appendRow(strips []strip, cells []cellLines, size, pad float64) []strip {
+func appendRow(bands []band, cells []cellLines, size, pad float64) []band {
 	height := 1
 	for _, c := range cells {
 		height = max(height, len(c.lines))
 	}
 	for i := range height {
-		s := strip{height: size * lineHeight, keep: i < height-1}
+		s := band{height: size * lineHeight, keep: i < height-1}
 		base := size * lineBase
 		if i == 0 {
 			s.height += pad
@@ -79,9 +78,9 @@ func appendRow(strips []strip, cells []cellLines, size, pad float64) []strip {
 			}
 			s.labels = appendLine(s.labels, c.lines[i], x, base, size)
 		}
-		strips = append(strips, s)
+		bands = append(bands, s)
 	}
-	return strips
+	return bands
 }
 
 // longestWord is the width, in ems, of the longest word that a column is made
@@ -100,7 +99,7 @@ type measure struct {
 
 // table adds a table. Its head, set in bold, is repeated when it runs over a
 // page; a row is not split between pages.
-func (f *flow) table(t table) {
+func (f *flow) table(t pageTable) {
 	if t.size == 0 {
 		t.size = sizeBody
 	}
@@ -155,7 +154,7 @@ func (f *flow) table(t table) {
 	}
 	full := x - gapColumn - f.x
 
-	set := func(c int, runs []run, al align) cellLines {
+	set := func(c int, runs []run, al cellAlign) cellLines {
 		out := cellLines{x: xs[c], width: widths[c], align: al}
 		if al == alignDecimal {
 			whole, rest := f.parts(runs, t.size)
@@ -186,35 +185,35 @@ func (f *flow) table(t table) {
 		for c := range row { // heads stand on the rule
 			row[c].lines = append(make([]textLine, deepest-len(row[c].lines)), row[c].lines...)
 		}
-		head = &tableHead{strips: appendRow(nil, row, t.size, pad)}
-		last := &head.strips[len(head.strips)-1]
+		head = &tableHead{bands: appendRow(nil, row, t.size, pad)}
+		last := &head.bands[len(head.bands)-1]
 		last.ruleBelow, last.ruleX, last.ruleWidth = rulerThin, f.x, full
-		for i := range head.strips {
-			head.strips[i].keep = true
-			head.height += head.strips[i].height
+		for i := range head.bands {
+			head.bands[i].keep = true
+			head.height += head.bands[i].height
 		}
-		start := len(f.strips)
-		f.strips = append(f.strips, head.strips...)
-		f.strips[start].gap = gapBlock
+		start := len(f.bands)
+		f.bands = append(f.bands, head.bands...)
+		f.bands[start].gap = gapBlock
 	}
 	for r, row := range t.rows {
 		var line []cellLines
 		for c := range t.columns {
 			line = append(line, set(c, cells[r][c], t.columns[c].align))
 		}
-		start := len(f.strips)
-		f.strips = appendRow(f.strips, line, t.size, pad)
+		start := len(f.bands)
+		f.bands = appendRow(f.bands, line, t.size, pad)
 		if row.rule && r > 0 {
-			s := &f.strips[start]
+			s := &f.bands[start]
 			s.ruleAbove, s.ruleX, s.ruleWidth = rulerHair, f.x, full
 		}
 		if r == 0 && !headed {
-			f.strips[start].gap = gapBlock
+			f.bands[start].gap = gapBlock
 		}
-		for i := start; i < len(f.strips); i++ {
-			f.strips[i].head = head
+		for i := start; i < len(f.bands); i++ {
+			f.bands[i].head = head
 		}
-		last := &f.strips[len(f.strips)-1]
+		last := &f.bands[len(f.bands)-1]
 		// The first two rows and the last two share a page: no row stands alone.
 		last.keep = r == 0 && len(t.rows) > 1 || r == len(t.rows)-2
 		if r == len(t.rows)-1 {
@@ -227,7 +226,7 @@ func (f *flow) table(t table) {
 // not fit on one line, each column gets room by the square root of its text,
 // which gives rows of few lines, but not more than its text needs nor less than
 // its longest word.
-func (f *flow) share(columns []column, needs []measure) []float64 {
+func (f *flow) share(columns []tableColumn, needs []measure) []float64 {
 	room := f.width - gapColumn*float64(len(columns)-1)
 	var natural, least, grow float64
 	for c, m := range needs {
@@ -250,6 +249,19 @@ func (f *flow) share(columns []column, needs []measure) []float64 {
 		return widths
 	}
 	settled := make([]bool, len(needs))
+	// A short text stays on one line, if that leaves the others their words.
+	brief := room / (1.5 * float64(len(needs)))
+	for c, m := range needs {
+		if m.natural <= brief && least+m.natural-m.least <= room {
+			widths[c], settled[c] = m.natural, true
+			least += m.natural - m.least
+		}
+	}
+	for c := range needs {
+		if settled[c] {
+			room -= widths[c]
+		}
+	}
 	for {
 		roots := 0.0
 		for c, m := range needs {

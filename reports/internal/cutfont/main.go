@@ -21,7 +21,7 @@ import (
 	"github.com/jung-kurt/gofpdf"
 	"golang.org/x/image/font/sfnt"
 
-	"tayra/reports/internal/letters"
+	"tayra/reports/internal/alphabet"
 )
 
 func main() {
@@ -44,7 +44,7 @@ func cut(dir string) error {
 	}
 	// Only letters that both weights draw are kept: a text that passes the
 	// check once can then be set in either.
-	keep := letters.All()
+	keep := alphabet.All()
 	for _, f := range fonts {
 		parsed, err := sfnt.Parse(f.ttf)
 		if err != nil {

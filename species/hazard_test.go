@@ -327,6 +327,12 @@ func TestMatchHazardsRelation(t *testing.T) {
 			t.Errorf("%s in the %s: %s is %q %q, want %q %q", tt.drug, tt.animal, tt.id, m.Relation, m.RelativeRank, tt.relation, tt.rank)
 		}
 	}
+	// A condition is asked of the animal itself, not of its relatives.
+	for animal, asked := range map[string]bool{"turkey": true, "chicken": false} {
+		if m, ok := matchOf(MatchHazards("monensin", "", found(t, animal), "PO"), "h030"); !ok || (m.Question() != "") != asked {
+			t.Errorf("%s: %q", animal, m.Question())
+		}
+	}
 	// Who is in danger: the handler, or the animal and the handler.
 	for _, tt := range []struct {
 		drug, animal, id string

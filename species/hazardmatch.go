@@ -42,7 +42,7 @@ type HazardMatch struct {
 // family others of the order, as "relative"; so do rows about another drug of
 // the class in the animal itself. Rows of law on residues and rows about a
 // breed's gene concern nobody's relatives. Operator rows concern every
-// patient. A route that is missing or not understood rules nothing out.
+// patient. A relative's condition is not asked of the patient. A route that is missing or not understood rules nothing out.
 //
 // No match says nothing: see HazardCoverage.
 func MatchHazards(drug, class string, a *Animal, route string) []HazardMatch {
@@ -70,6 +70,8 @@ func MatchHazards(drug, class string, a *Animal, route string) []HazardMatch {
 			m.Relation, m.RelativeRank = "relative", "drug class"
 		case h.operatorToo && m.Relation != "direct":
 			m.Relation, m.RelativeRank, m.Operator = "direct", "", true
+		case m.Relation == "relative":
+			m.Condition, m.ConditionKind = "", "" // a relative is no adult turkey
 		}
 		if m.Relation != "" {
 			out = append(out, m)

@@ -124,6 +124,10 @@ func (r *caseReader) pairs(path string, n ast.Node) (ps []pair, ok bool) {
 		case key.block || key.manyLines:
 			r.fault(key.Entry, path, "the key runs over several lines", "write the key, a colon, a space and the value")
 			continue
+		case key.plain && r.yaml.glued(key):
+			// In braces the library reads {dose:4} as a key and a value, YAML as one text.
+			r.fault(key.Entry, joinPath(path, key.Text), "no space after the colon", "write a space between the colon and the value")
+			continue
 		}
 		if line, twice := first[key.Text]; twice {
 			r.fault(key.Entry, joinPath(path, key.Text), fmt.Sprintf("given twice, first on line %d", line), "keep one of the two")

@@ -216,10 +216,25 @@ func TestReadCaseHostile(t *testing.T) {
 					c.Models[0].Dose.Text != want.Models[0].Dose.Text || c.Models[0].Source.Text == "" {
 					t.Errorf("read as\n%s", WriteCase(c))
 				}
-			case "check":
+			case "check", "draft":
 				// Well-formed, and wrong only in what the values mean.
 				if err != nil {
-					t.Error(err)
+					t.Fatal(err)
+				}
+				checked, err := c.Check()
+				if tt.stage == "draft" && err == nil {
+					_, err = Draft(checked)
+				}
+				var faults InputErrors
+				var one *InputError
+				if errors.As(err, &one) {
+					faults = InputErrors{one}
+				} else if !errors.As(err, &faults) {
+					t.Fatalf("taken without an error: %v", err)
+				}
+				f := faults[0]
+				if !strings.HasPrefix(f.Field, tt.field) || !strings.Contains(f.Error(), tt.expected) || f.Remedy == "" {
+					t.Errorf("got %v\nwant %s: …%s…", err, tt.field, tt.expected)
 				}
 			default:
 				t.Errorf("unknown stage %q", tt.stage)

@@ -19,6 +19,7 @@ import (
 	"errors"
 	"fmt"
 	"regexp"
+	"slices"
 	"strconv"
 	"strings"
 	"unicode"
@@ -323,6 +324,7 @@ func (y *yamlText) place(t *token.Token) (line, column int) {
 // leaf is a text of the file with its place.
 type leaf struct {
 	Entry
+	plain     bool // without quotes
 	block     bool // a block scalar: the text stands on the lines below
 	manyLines bool // a plain text over several lines
 }
@@ -362,17 +364,33 @@ func (y *yamlText) plainLeaf(t *token.Token) (leaf, *InputError) {
 		return leaf{}, y.unsure(t)
 	}
 	value := []rune(t.Value)
-	if strings.ContainsRune("`@%,[]{}#&*!|>'\"", value[0]) {
-		return leaf{}, y.tokenFault(t, fmt.Sprintf("a value cannot begin with %c", value[0]), remedyQuote)
+	// The library is laxer than YAML here, and other readers would see other texts.
+	first := value[0]
+	if strings.ContainsRune("`@%,[]{}#&*!|>'\"", first) ||
+		(strings.ContainsRune("-?:", first) && (len(value) == 1 || value[1] == ' ')) {
+		return leaf{}, y.tokenFault(t, fmt.Sprintf("a value cannot begin with %c", first), remedyQuote)
+	}
+	if y.opener[t] != nil && strings.ContainsAny(t.Value, "[]{}") {
+		return leaf{}, y.tokenFault(t, "a bracket in the value", remedyQuote)
+	}
+	if strings.Contains(t.Value, ": ") || value[len(value)-1] == ':' {
+		return leaf{}, y.tokenFault(t, "a second colon in the value", remedyQuote)
 	}
 	column, ok := y.nearest(line, t.Position.Column, func(c int) bool { return y.plainAt(line, c, value, y.opener[t] != nil) })
 	if !ok {
 		return leaf{}, y.unsure(t)
 	}
-	l := leaf{Entry: Entry{Text: t.Value, Line: line, Column: column}}
+	l := leaf{Entry: Entry{Text: t.Value, Line: line, Column: column}, plain: true}
 	l.manyLines = column-1+len(value) > len(y.lines[line-1]) ||
 		string(y.lines[line-1][column-1:column-1+len(value)]) != t.Value
 	return l, nil
+}
+
+// glued says whether something stands right behind the colon of a plain key.
+func (y *yamlText) glued(key leaf) bool {
+	rest := y.lines[key.Line-1][key.Column-1+utf8.RuneCountInString(key.Text):]
+	i := slices.Index(rest, ':')
+	return i >= 0 && i+1 < len(rest) && !strings.ContainsRune(" \t,]}", rest[i+1])
 }
 
 // nearest is the column of the line nearest to the one given at which ok holds
@@ -579,7 +597,7 @@ func (y *yamlText) syntax(err error) *InputError {
 var (
 	gluedColon = regexp.MustCompile(`^[ -]*([A-Za-z_0-9]+):([^ \t\r\n/].*)$`)
 	wideColon  = regexp.MustCompile(`^[ -]*[A-Za-z_0-9]+ *[：﹕꞉∶]`)
-	twoColons  = regexp.MustCompile(`^[ -]*([A-Za-z_0-9]+):[ \t]+([^"'#]*:[ \t].*|[^"'#]*:)$`)
+	twoColons  = regexp.MustCompile(`^[ -]*([A-Za-z_0-9]+):[ \t]+([^"'#{[][^"'#]*:[ \t].*|[^"'#{[][^"'#]*:|:[ \t].*)$`)
 )
 
 // explain finds the likely slip behind a syntax error. The library says where
@@ -619,6 +637,8 @@ func (y *yamlText) explain(t *token.Token, message string) *InputError {
 		return fault(errOpenQuote.Error(), remedyOpenQuote)
 	case has("reserved character"):
 		return fault("a value cannot begin with @ or `", remedyQuote)
+	case has("block sequence entries"):
+		return fault("a value cannot begin with a dash and a space", "begin a list on the next line, or "+remedyQuote)
 	case has("invalid header option"):
 		return fault("a value cannot begin with > or |", remedyQuote)
 	case has("could not find '[' character", "could not find '{' character"):
@@ -646,6 +666,10 @@ func (y *yamlText) explain(t *token.Token, message string) *InputError {
 	}
 	if y.behindClosed(line, column) {
 		return fault("something stands behind the closing quote or bracket", "put the whole value in double quotes")
+	}
+	if value := strings.TrimLeft(text[strings.IndexByte(text, ':')+1:], " \t"); strings.HasPrefix(value, "{") || strings.HasPrefix(value, "[") {
+		return fault("the brackets on this line cannot be read",
+			"write each key or item on a line of its own, or put the value in double quotes")
 	}
 	if line = last; last > t.Position.Line {
 		column = y.indent(line) + 1

@@ -181,8 +181,7 @@ func (r *rate) massLimits() (low, high metabolic.Mass, ok bool) {
 	case l.measured != nil:
 		return l.measured.Mass / measuredReach, l.measured.Mass * measuredReach, true
 	case r.pred != nil:
-		s := species.ScatterOf("relatives", "", l.animal.Class)
-		return s.MassLow, s.MassHigh, s.MassHigh > 0
+		return r.pred.MassLow, r.pred.MassHigh, r.pred.MassHigh > 0
 	case l.equation.MassHigh > 0:
 		return l.equation.MassLow, l.equation.MassHigh, true
 	case l.scatter.MassHigh > 0:

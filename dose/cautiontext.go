@@ -201,6 +201,8 @@ func (n *numbers) hazardText(c *Case, r *raised, out *Caution) {
 		fmt.Fprintf(&b, "Danger to the person who handles it (%s): ", drug)
 	case h.Meant != "":
 		fmt.Fprintf(&b, "Did you mean %s? For %s on file: ", h.Meant, drug)
+	case h.RelativeRank == "drug class":
+		fmt.Fprintf(&b, "Known in %s for a drug of the same class (%s): ", taxonWords(h.Taxon), drug)
 	case h.Relation == "relative":
 		fmt.Fprintf(&b, "Known in a relative (%s, of the same %s), %s: ", h.Taxon, h.RelativeRank, drug)
 	default:

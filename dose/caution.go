@@ -63,8 +63,7 @@ const (
 	Anatomy          Slug = "anatomy"
 	Accumulation     Slug = "accumulation"
 	FlipFlop         Slug = "flip-flop"
-	TrackRecordPoor  Slug = "track-record"
-	NoHazardOnFile   Slug = "no-hazard-on-file"
+	NameTakenAs      Slug = "name-taken-as"
 	HazardOnFile     Slug = "hazard" // followed by the row's id: hazard-h019
 )
 

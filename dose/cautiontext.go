@@ -149,6 +149,12 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 	case AdultMass:
 		*t = fmt.Sprintf("A mass of %s is outside the adult range on file, %s to %s: young, obese, ill, or another animal?", kg("mass", r.a), kg("adult_low", r.b), kg("adult_high", r.c))
 		out.Source = massSource(c, r.model)
+	case NameTakenAs:
+		a := c.Patient.Animal
+		if r.model >= 0 {
+			a = c.Models[r.model].Animal
+		}
+		*t = "The name of the animal was read as follows: " + strings.TrimSuffix(a.MatchedAs, ".") + "."
 	case MassUnjudged:
 		*t = fmt.Sprintf("No adult mass of %s is on file: a slip in the mass cannot be found.", patient)
 	case LowConfidence:

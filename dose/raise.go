@@ -69,6 +69,9 @@ func raiseAnimal(c *Case, n *numbers, add adder) {
 		}
 		add(AdultMass, l, -1, float64(w), float64(a.AdultLow), float64(a.AdultHigh))
 	}
+	if a.MatchedAs != "" {
+		add(NameTakenAs, Note, -1)
+	}
 	if p.Mass.Estimated() {
 		l := Note
 		if p.Mass.HalfWidth() > math.Log(1.2) {
@@ -143,6 +146,9 @@ func raiseModel(c *Case, n *numbers, i int, add adder) {
 	}
 	if implausible(b, m.Mass.Middle, Adult) {
 		add(ImplausibleMass, Stop, i, float64(m.Mass.Middle), float64(b.AdultLow), float64(b.AdultHigh))
+	}
+	if b.MatchedAs != "" {
+		add(NameTakenAs, Note, i)
 	}
 	if m.Mass.Estimated() {
 		l := Note

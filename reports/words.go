@@ -1,0 +1,594 @@
+package reports
+
+import (
+	"fmt"
+	"math"
+	"regexp"
+	"strings"
+	"unicode"
+	"unicode/utf8"
+
+	"golang.org/x/text/width"
+
+	"tayra/dose"
+	"tayra/metabolic"
+)
+
+// The wording that the writers share: how a value of the record is said, so
+// that the terminal and the paper say it alike. Every number is printed by
+// package metabolic; what is decided here is which words stand around it.
+
+// unitOf reads the unit of a dose as the record spells it: mg/kg, IU/kg, with
+// /h for an infusion.
+func unitOf(unit string) (amount metabolic.AmountUnit, perHour bool) {
+	if strings.HasPrefix(unit, "IU") {
+		amount = metabolic.InternationalUnit
+	}
+	return amount, strings.HasSuffix(unit, "/h")
+}
+
+// perKgWords says a dose per kg: "8.14 mg/kg", "3,000 units/kg", "2 mg/kg/h".
+func perKgWords(v float64, unit string) string {
+	amount, perHour := unitOf(unit)
+	return metabolic.FormatDosePerKg(v, amount, perHour)
+}
+
+// perKgPair says both ends of a dose per kg, or the one dose.
+func perKgPair(p dose.Pair, unit string) string {
+	return metabolic.FormatRange(p[0], p[1], func(v float64) string { return perKgWords(v, unit) })
+}
+
+// perKgRange says an interval about a dose per kg.
+func perKgRange(r dose.DoseRange, unit string) string {
+	return perKgPair(dose.Pair{r.Low, r.High}, unit)
+}
+
+// dailyWords says a daily amount per kg: "16.3 mg/kg/day". The unit is that of
+// the dose, without its hour.
+func dailyWords(v float64, unit string) string {
+	amount, _ := unitOf(unit)
+	return metabolic.FormatDosePerKg(v, amount, false) + "/day"
+}
+
+// dailyPair says both ends of a daily amount, or nothing where there is none.
+func dailyPair(p *dose.Pair, unit string) string {
+	if p == nil {
+		return ""
+	}
+	return metabolic.FormatRange(p[0], p[1], func(v float64) string { return dailyWords(v, unit) })
+}
+
+// amountWords says an amount per administration, of an infusion per hour.
+func amountWords(v float64, unit string) string {
+	amount, perHour := unitOf(unit)
+	s := metabolic.FormatAmount(v, amount)
+	if perHour {
+		s += "/h"
+	}
+	return s
+}
+
+// amountPair says both ends of an amount, or the one amount.
+func amountPair(p dose.Pair, unit string) string {
+	return metabolic.FormatRange(p[0], p[1], func(v float64) string { return amountWords(v, unit) })
+}
+
+// amountRange says an interval about an amount.
+func amountRange(r dose.DoseRange, unit string) string {
+	return amountPair(dose.Pair{r.Low, r.High}, unit)
+}
+
+// isRange says whether a pair prints as two values.
+func isRange(p dose.Pair, unit string) bool { return perKgWords(p[0], unit) != perKgWords(p[1], unit) }
+
+// intervalOf gives back the interval that a kind of regimen and its hours name.
+func intervalOf(kind string, hours *float64) metabolic.Interval {
+	switch {
+	case hours != nil:
+		return metabolic.Interval{Kind: metabolic.Repeated, Hours: metabolic.Hours(*hours)}
+	case kind == "infusion":
+		return metabolic.Interval{Kind: metabolic.Infusion}
+	}
+	return metabolic.Interval{Kind: metabolic.Once}
+}
+
+// intervalWords says an interval: "every 12 hours", "once", "continuous
+// infusion". kind is that of a model's regimen or the name of a plan.
+func intervalWords(kind string, hours *float64) string {
+	return metabolic.FormatInterval(intervalOf(kind, hours))
+}
+
+// intervalBothWords adds the short form that orders are written in, where it
+// says the same: "every 12 hours (q12h)".
+func intervalBothWords(kind string, hours *float64) string {
+	i := intervalOf(kind, hours)
+	s := metabolic.FormatInterval(i)
+	if i.Kind == metabolic.Repeated && float64(i.Hours) == math.Trunc(float64(i.Hours)) && i.Hours <= 48 {
+		s += " (" + metabolic.FormatShortInterval(i) + ")"
+	}
+	return s
+}
+
+// measuredWords says what a device measured out. It is a whole number of the
+// device's steps and printed in full: at 3 digits 12.35 mL in steps of 0.05 mL
+// would read 12.4 mL, which that device cannot measure.
+func measuredWords(v float64, measure string) string {
+	const figures = 7 // as many steps as a device has, and more
+	s := metabolic.Significant(v, figures)
+	switch {
+	case measure == "mL" || measure == "mL/h":
+		return s + " " + measure
+	case v <= 1:
+		return s + " " + measure
+	}
+	return s + " " + measure + "s"
+}
+
+// strengthWords says the strength of a product: "50 mg/mL", of a tablet or
+// capsule "250 mg". Figures are kept as on the label.
+func strengthWords(p *dose.ProductRecord, unit string) string {
+	const figures = 7
+	name := "mg"
+	if amount, _ := unitOf(unit); amount == metabolic.InternationalUnit {
+		name = "units"
+	}
+	if p.AmountPerPiece > 0 {
+		return metabolic.Significant(p.AmountPerPiece, figures) + " " + name
+	}
+	return metabolic.Significant(p.AmountPerML, figures) + " " + name + "/mL"
+}
+
+// errorWords says how far a rounded dose is from the one asked for: "0.378 %
+// more than drafted".
+func errorWords(percent float64) string {
+	switch s := metabolic.FormatPercent(math.Abs(percent) / 100); {
+	case s == "0 %":
+		return "exactly as drafted"
+	case percent > 0:
+		return s + " more than drafted"
+	default:
+		return s + " less than drafted"
+	}
+}
+
+// giveWords says what to measure out for a dose: "6.7 mL of 50 mg/mL
+// (335 mg)", both ends for a dose range. It is empty where nothing can be
+// measured.
+func giveWords(p *dose.ProductRecord, unit string) string {
+	if p == nil {
+		return ""
+	}
+	strength := strengthWords(p, unit)
+	if n := len(p.Pump); n > 0 {
+		low, high := p.Pump[0], p.Pump[n-1]
+		if low.BelowStep || high.BelowStep {
+			return ""
+		}
+		rate := metabolic.FormatRange(low.MLPerH, high.MLPerH, func(v float64) string { return measuredWords(v, "mL/h") })
+		return rate + " of " + strength + " (" + amountPair(dose.Pair{low.AmountPerHour, high.AmountPerHour}, unit) + ")"
+	}
+	n := len(p.Ends)
+	if n == 0 {
+		return ""
+	}
+	low, high := p.Ends[0], p.Ends[n-1]
+	switch {
+	case low.Dilution != nil && high.Dilution != nil && low.Dilution.Factor == high.Dilution.Factor:
+		a, b := low.Dilution, high.Dilution
+		volume := metabolic.FormatRange(a.DrawML, b.DrawML, func(v float64) string { return measuredWords(v, "mL") })
+		return volume + " of the product diluted " + dilutionWords(a.Factor) + " (" + amountPair(dose.Pair{a.AmountGiven, b.AmountGiven}, unit) + ")"
+	case low.BelowStep || high.BelowStep:
+		return ""
+	}
+	measured := metabolic.FormatRange(low.Measured, high.Measured, func(v float64) string { return measuredWords(v, high.Measure) })
+	if low.Measure != "mL" { // "0.5 to 1.5 tablets": the word follows the larger
+		measured = metabolic.Significant(low.Measured, 7) + " to " + measuredWords(high.Measured, high.Measure)
+		if low.Measured == high.Measured {
+			measured = measuredWords(high.Measured, high.Measure)
+		}
+	}
+	return measured + " of " + strength + " (" + amountPair(dose.Pair{low.AmountGiven, high.AmountGiven}, unit) + ")"
+}
+
+// dilutionWords says a dilution: "1 in 20".
+func dilutionWords(factor float64) string { return "1 in " + metabolic.Significant(factor, 7) }
+
+// orderWords is the first line of a draft, as an order is written: drug,
+// amount, route, interval in words.
+func orderWords(ws *dose.Worksheet) string {
+	d := ws.Drafted
+	s := ws.Drug.Name + " " + amountPair(d.PerAdministration, d.Unit)
+	if d.Route != "" {
+		s += " " + d.Route
+	}
+	return s + " " + intervalBothWords(d.Plan, d.IntervalH)
+}
+
+// massChoices says the amount at the ends of an estimated mass: "303 mg if it
+// weighs 36 kg, 366 mg if 46 kg". It is empty for a weighed mass.
+func massChoices(ws *dose.Worksheet, low, high *dose.Pair, unit string) string {
+	if low == nil || high == nil {
+		return ""
+	}
+	mass := func(kg float64) string { return metabolic.FormatMass(metabolic.Mass(kg)) }
+	return fmt.Sprintf("%s if it weighs %s, %s if %s", amountPair(*low, unit), mass(ws.Patient.MassLowKg), amountPair(*high, unit), mass(ws.Patient.MassHighKg))
+}
+
+// animalWords says an animal by its common name, else by its scientific one.
+func animalWords(common, scientific string) string {
+	if common != "" {
+		return common
+	}
+	return scientific
+}
+
+// patientName is the patient by its name and kind: "Marisol, giant anteater".
+func patientName(p *dose.PatientRecord) string {
+	s := animalWords(p.CommonName, p.Species)
+	if p.Name != "" {
+		s = p.Name + ", " + s
+	}
+	return s
+}
+
+// massWords says a mass as weighed or as estimated, with its ends.
+func massWords(middle, low, high float64) string {
+	return metabolic.FormatBodyMass(metabolic.BodyMass{Middle: metabolic.Mass(middle), Low: metabolic.Mass(low), High: metabolic.Mass(high)})
+}
+
+// modelName is the model of a draft by its common name.
+func modelName(d *dose.ModelDraft) string { return animalWords(d.CommonName, d.Model) }
+
+// modelRegimen says a model's own regimen: "10 mg/kg SC every 12 hours".
+func modelRegimen(d *dose.ModelDraft) string {
+	s := perKgPair(d.DosePerKg, d.Unit)
+	if given := asGiven(d.DoseTyped); !isPerKg(d.DoseTyped) {
+		s += " (given as " + given + ")"
+	}
+	if d.Route != "" {
+		s += " " + d.Route
+	}
+	return s + " " + intervalWords(d.Kind, d.IntervalH)
+}
+
+// modelWords says a model with its regimen: "dog, 18 kg: 10 mg/kg SC every
+// 12 hours".
+func modelWords(d *dose.ModelDraft) string {
+	s := modelName(d) + ", " + massWords(d.MassKg, d.MassLowKg, d.MassHighKg)
+	if d.TemperatureC != nil {
+		s += " at " + metabolic.FormatCelsius(metabolic.Celsius(*d.TemperatureC))
+	}
+	return s + ": " + modelRegimen(d)
+}
+
+// draftedModel is the draft that the worksheet's dose was taken from; nil when
+// the record names none.
+func draftedModel(ws *dose.Worksheet) *dose.ModelDraft {
+	if ws.DraftedFrom == nil || ws.DraftedFrom.Index < 0 || ws.DraftedFrom.Index >= len(ws.Drafts) {
+		return nil
+	}
+	return &ws.Drafts[ws.DraftedFrom.Index]
+}
+
+// planWords says the name of a plan.
+func planWords(name string) string {
+	if name == "once" {
+		return "single dose"
+	}
+	return strings.ReplaceAll(name, "-", " ")
+}
+
+// chosenWords says who chose the drafted plan.
+func chosenWords(d *dose.Drafted) string {
+	switch d.ChosenBy {
+	case "case":
+		return "named in the case"
+	case "fit":
+		return "by the line fitted to data"
+	}
+	return "chosen by rule"
+}
+
+// averageWords says the average concentration of a plan against the model's.
+func averageWords(ratio float64) string {
+	if s := metabolic.FormatRatio(ratio); s != "1" {
+		return s + " times"
+	}
+	return "equal"
+}
+
+// levelWord is the word for a level of caution, in capitals where it must not
+// be overlooked.
+func levelWord(l dose.Level) string {
+	switch l {
+	case dose.Stop:
+		return "STOP"
+	case dose.Warn:
+		return "WARN"
+	}
+	return "note"
+}
+
+// stopWords says in few words, and without a number, why a stop stands: what
+// the box holds in the place of the dose. The whole sentence is the caution's.
+func stopWords(c *dose.Caution) string {
+	switch dose.Slug(c.Slug) {
+	case dose.SameSpecies:
+		return "model and patient are of one species: nothing is scaled between them"
+	case dose.ImplausibleMass:
+		return "the mass cannot be this animal's: correct the case"
+	case dose.NarrowMargin:
+		return "the drug's margin is narrow"
+	case dose.CrossClass:
+		return "patient and model are of different classes"
+	case dose.CrossThermy:
+		return "one of the two animals warms itself, the other does not"
+	case dose.TorpidPatient:
+		return "the patient is torpid"
+	case dose.NeonatePatient:
+		return "the patient is a neonate"
+	case dose.ClearingOrgan:
+		return "the organ that clears the drug is diseased"
+	case dose.DepotForm:
+		return "a depot or long-acting form: its interval does not scale"
+	case dose.AboveTolerated:
+		return "the dose would be above the highest cited as tolerated by the model"
+	case dose.Peak:
+		return "a single administration would be far above the model's"
+	case dose.EffectDriven:
+		return "a potent immobiliser: its dose does not follow metabolic rate"
+	case dose.BelowStep:
+		return "the volume is too small for the device"
+	}
+	if strings.HasPrefix(c.Slug, string(dose.HazardOnFile)) {
+		return "a published hazard stands against this drug here"
+	}
+	return "the caution " + strings.ReplaceAll(c.Slug, "-", " ")
+}
+
+// activeStops are the stops that no written reason has set aside.
+func activeStops(ws *dose.Worksheet) []*dose.Caution {
+	var out []*dose.Caution
+	for i := range ws.Cautions {
+		if c := &ws.Cautions[i]; c.Level == dose.Stop && !c.Overridden {
+			out = append(out, c)
+		}
+	}
+	return out
+}
+
+// overridden are the stops that a written reason has set aside.
+func overridden(ws *dose.Worksheet) []*dose.Caution {
+	var out []*dose.Caution
+	for i := range ws.Cautions {
+		if c := &ws.Cautions[i]; c.Overridden {
+			out = append(out, c)
+		}
+	}
+	return out
+}
+
+// countWords counts the cautions by level: "2 stops, 1 warn, 3 notes".
+func countWords(cautions []dose.Caution) string {
+	var n [3]int
+	for i := range cautions {
+		switch cautions[i].Level {
+		case dose.Stop:
+			n[0]++
+		case dose.Warn:
+			n[1]++
+		default:
+			n[2]++
+		}
+	}
+	var parts []string
+	for i, word := range [...]string{"stop", "warning", "note"} {
+		switch {
+		case n[i] == 1:
+			parts = append(parts, "1 "+word)
+		case n[i] > 1:
+			parts = append(parts, fmt.Sprintf("%d %ss", n[i], word))
+		}
+	}
+	if len(parts) == 0 {
+		return "none raised, which is no evidence of safety"
+	}
+	return strings.Join(parts, ", ")
+}
+
+// worstWords is the word in the box for the gravest caution.
+func worstWords(ws *dose.Worksheet) string {
+	if len(ws.Cautions) == 0 {
+		return "Cautions: " + countWords(nil) + "."
+	}
+	s := "Worst caution: " + levelWord(ws.Cautions[0].Level)
+	if ws.Cautions[0].Overridden {
+		s += ", overridden with a written reason"
+	}
+	return s + ". In all: " + countWords(ws.Cautions) + "."
+}
+
+// cautionModels says which models raised a caution, by their common names; it
+// is empty for a caution of the case itself, and in a case of one model, where
+// it goes without saying.
+func cautionModels(ws *dose.Worksheet, c *dose.Caution) string {
+	if c.Model == "" || len(ws.Drafts) < 2 {
+		return ""
+	}
+	names := strings.Split(c.Model, ", ")
+	for i, n := range names {
+		for k := range ws.Drafts {
+			if ws.Drafts[k].Model == n {
+				names[i] = modelName(&ws.Drafts[k])
+			}
+		}
+	}
+	return strings.Join(names, ", ")
+}
+
+// numberWords says the numbers behind a caution that its sentence leaves out.
+func numberWords(c *dose.Caution) string {
+	if v, ok := c.Numbers["threshold"]; ok {
+		return "limit " + metabolic.Significant(v, 3)
+	}
+	return ""
+}
+
+// relationWords says how a published dose's species is related to the patient.
+func relationWords(relation string) string {
+	switch relation {
+	case "":
+		return ""
+	case "other class":
+		return "of another class"
+	}
+	return "same " + relation
+}
+
+// drugWords says what the case tells of the drug, beside its name.
+func drugWords(d *dose.DrugRecord) string {
+	parts := make([]string, 0, 6)
+	if d.Class != "" {
+		parts = append(parts, d.Class)
+	}
+	if d.Elimination == "unknown" || d.Elimination == "" {
+		parts = append(parts, "elimination unknown")
+	} else {
+		parts = append(parts, d.Elimination+" elimination")
+	}
+	if d.Extraction != "" {
+		parts = append(parts, d.Extraction+" extraction")
+	}
+	switch d.Activity {
+	case "time":
+		parts = append(parts, "effect follows time")
+	case "concentration":
+		parts = append(parts, "effect follows concentration")
+	}
+	parts = append(parts, "margin "+orUnknown(d.Margin))
+	if d.Formulation != "" {
+		parts = append(parts, d.Formulation)
+	}
+	if d.Controlled {
+		parts = append(parts, "CONTROLLED")
+	}
+	return strings.Join(parts, ", ")
+}
+
+// capital begins a sentence.
+func capital(s string) string {
+	r, n := utf8.DecodeRuneInString(s)
+	return string(unicode.ToUpper(r)) + s[n:]
+}
+
+func orUnknown(s string) string {
+	if s == "" {
+		return "unknown"
+	}
+	return s
+}
+
+// groupSources gathers what leans on one citation, in the order of the record.
+func groupSources(sources []dose.SourceLine) []dose.SourceLine {
+	var out []dose.SourceLine
+	at := map[string]int{}
+	for _, s := range sources {
+		if i, ok := at[s.Citation]; ok {
+			out[i].What += "; " + s.What
+			out[i].Memory = out[i].Memory || s.Memory
+			continue
+		}
+		at[s.Citation] = len(out)
+		out = append(out, s)
+	}
+	return out
+}
+
+var (
+	typedRange    = regexp.MustCompile(`([0-9])\s*[-–]\s*([0-9.])`)
+	typedNumber   = regexp.MustCompile(`[0-9]*\.?[0-9]+`)
+	typedIU       = regexp.MustCompile(`\b(IU|iu|U|u)\b`)
+	wordIU        = regexp.MustCompile(`\bIU\b`)
+	typedMicro    = regexp.MustCompile(`[µμ]g|\bug\b`)
+	typedUnspaced = regexp.MustCompile(`([0-9])([a-zA-Z])`)
+	typedPerKg    = regexp.MustCompile(`(?i)/\s*kg\s*(/\s*h)?\s*$`)
+)
+
+// asGiven says a dose as it was typed, by the rules of paper: ".5-1.0mg" is
+// "0.5 to 1 mg", IU is units, µg is mcg. The record keeps the letters typed.
+func asGiven(typed string) string {
+	s := typedRange.ReplaceAllString(strings.TrimSpace(typed), "$1 to $2")
+	s = typedNumber.ReplaceAllStringFunc(s, func(n string) string {
+		if strings.HasPrefix(n, ".") {
+			n = "0" + n
+		}
+		if strings.Contains(n, ".") {
+			n = strings.TrimRight(strings.TrimRight(n, "0"), ".")
+		}
+		return n
+	})
+	s = typedMicro.ReplaceAllString(typedUnspaced.ReplaceAllString(s, "$1 $2"), "mcg")
+	return typedIU.ReplaceAllString(s, "units")
+}
+
+// paperUnits says IU as paper does: units. It is for formulas and results that
+// are kept as text.
+func paperUnits(s string) string { return wordIU.ReplaceAllString(s, "units") }
+
+// isPerKg says whether a dose was typed per kg, or per kg and hour: then it is
+// printed once, not twice.
+func isPerKg(typed string) bool { return typed == "" || typedPerKg.MatchString(typed) }
+
+// visible makes a text harmless where it is shown: what is not seen, or turns
+// the letters around it, stands there as its code point. A line break or a tab
+// becomes a space, so that a text can never begin a line of its own.
+func visible(s string) string {
+	plain := true
+	for i := 0; i < len(s) && plain; i++ {
+		plain = s[i] >= ' ' && s[i] <= '~'
+	}
+	if plain {
+		return s
+	}
+	var b strings.Builder
+	for i := 0; i < len(s); {
+		r, n := utf8.DecodeRuneInString(s[i:])
+		switch {
+		case r == '\n' || r == '\t':
+			b.WriteByte(' ')
+		case r == utf8.RuneError && n == 1:
+			fmt.Fprintf(&b, `\x%02x`, s[i])
+		case unicode.IsControl(r):
+			fmt.Fprintf(&b, `\x%02x`, r)
+		case unicode.In(r, unicode.Cf, unicode.Zl, unicode.Zp, unicode.Cs, unicode.Co) || r == utf8.RuneError:
+			if r > 0xFFFF {
+				fmt.Fprintf(&b, `\U%08x`, r)
+			} else {
+				fmt.Fprintf(&b, `\u%04x`, r)
+			}
+		default:
+			b.WriteRune(r)
+		}
+		i += n
+	}
+	return b.String()
+}
+
+// columns is how many columns of a terminal a text takes: two for the wide
+// letters of East Asia, none for an accent that joins the letter before it.
+func columns(s string) int {
+	n := 0
+	for _, r := range s {
+		switch {
+		case r < 0x300:
+			n++
+		case unicode.In(r, unicode.Mn, unicode.Me):
+		default:
+			n++
+			if k := width.LookupRune(r).Kind(); k == width.EastAsianWide || k == width.EastAsianFullwidth {
+				n++
+			}
+		}
+	}
+	return n
+}

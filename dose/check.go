@@ -3,7 +3,9 @@ package dose
 import (
 	"errors"
 	"fmt"
+	"maps"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 	"time"
@@ -104,27 +106,8 @@ func word[T any](k *checker, e Entry, field string, words map[string]T) (v T) {
 	if v, ok := words[strings.ToLower(strings.TrimSpace(e.Text))]; ok {
 		return v
 	}
-	k.fail(e, field, fmt.Sprintf("%q is none of the words known here", e.Text), "write "+orList(keys(words)))
+	k.fail(e, field, fmt.Sprintf("%q is none of the words known here", e.Text), "write "+orList(slices.Sorted(maps.Keys(words))))
 	return v
-}
-
-// keys lists a word map in a fixed order, by length then alphabet: the same
-// message every time.
-func keys[T any](m map[string]T) []string {
-	out := make([]string, 0, len(m))
-	for w := range m {
-		out = append(out, w)
-	}
-	sortStrings(out)
-	return out
-}
-
-func sortStrings(s []string) {
-	for i := 1; i < len(s); i++ {
-		for j := i; j > 0 && s[j] < s[j-1]; j-- {
-			s[j], s[j-1] = s[j-1], s[j]
-		}
-	}
 }
 
 func orList(words []string) string {

@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"tayra/metabolic"
@@ -284,12 +285,9 @@ func (f *FitRecord) caution(target FitTarget) {
 	sortCautions(f.Cautions)
 }
 
+// sortCautions puts stops first and keeps the order within a level.
 func sortCautions(cs []Caution) {
-	for i := 1; i < len(cs); i++ {
-		for k := i; k > 0 && levelRank(cs[k].Level) < levelRank(cs[k-1].Level); k-- {
-			cs[k], cs[k-1] = cs[k-1], cs[k]
-		}
-	}
+	slices.SortStableFunc(cs, func(a, b Caution) int { return levelRank(a.Level) - levelRank(b.Level) })
 }
 
 // exponentRule says where the exponent lies in the rule of exponents, and why

@@ -365,8 +365,7 @@ func raiseSeveral(c *Case, n *numbers, add adder) {
 	}
 }
 
-// sortRaised puts stops first, keeping the order within a level, and merges
-// what two models raise alike.
+// sortRaised puts stops first, keeping the order within a level.
 func sortRaised(rs []raised) {
 	// An insertion sort: a dozen entries, nearly in order, no allocation.
 	for i := 1; i < len(rs); i++ {

@@ -141,9 +141,10 @@ func FitNested(rows []NestedRow) (*NestedFit, error) {
 	return s.fit(rows, st), nil
 }
 
-// nestedStarts are where the search begins, as the same θ at every level; the best
-// end is kept. A likelihood of variances can have more than one hill.
-var nestedStarts = []float64{0.5, 0.05, 3}
+// nestedStarts are the θ where the search begins; the best end is kept. The
+// likelihood of a small table can have several hills, often one on which a
+// single level explains what another hill shares out between two.
+var nestedStarts = [][levels]float64{{0.5, 0.5, 0.5}, {1, 0.01, 0.01}, {0.01, 1, 0.01}, {0.01, 0.01, 1}}
 
 func (s *nestedSums) maximise() (*nestedState, error) {
 	var free []int
@@ -190,23 +191,50 @@ func (s *nestedSums) maximise() (*nestedState, error) {
 			grad[i] = -2 * x[i] * g[l]
 		}
 	}
+	problem := optimize.Problem{Func: value, Grad: slope}
+	settings := &optimize.Settings{GradientThreshold: 1e-9, MajorIterations: 500, Converger: optimize.NeverTerminate{}}
+	search := func(x []float64) bool {
+		// An error here is a line search that found no lower value at the last
+		// digits: the point reached is judged by its likelihood.
+		r, _ := optimize.Minimize(problem, x, settings, &optimize.BFGS{})
+		if r == nil || !(-r.F > bestLL) {
+			return false
+		}
+		best, bestLL = slices.Clone(r.X), -r.F
+		return true
+	}
 	for _, start := range nestedStarts {
 		x := make([]float64, len(free))
-		for i := range x {
-			x[i] = math.Sqrt(start)
+		for i, l := range free {
+			x[i] = math.Sqrt(start[l])
 		}
-		settings := &optimize.Settings{GradientThreshold: 1e-9, MajorIterations: 500, Converger: optimize.NeverTerminate{}}
-		// An error here is a line search that found no lower value at the last
-		// digits: the point reached is judged by its likelihood below.
-		r, _ := optimize.Minimize(optimize.Problem{Func: value, Grad: slope}, x, settings, &optimize.BFGS{})
-		if r != nil && -r.F > bestLL {
-			best, bestLL = slices.Clone(r.X), -r.F
+		search(x)
+	}
+	// At x = 0 the slope on x is zero whatever that on θ: a search that stepped
+	// on it stays. It is sent off again where a positive θ would be likelier.
+	for trapped := best != nil; trapped; {
+		trapped = false
+		if err := move(best); err != nil {
+			return nil, err
 		}
+		off := slices.Clone(best)
+		g := s.gradient(st)
+		for i, l := range free {
+			if st.theta[l] < 1e-8 && g[l] > 1e-4 {
+				off[i], trapped = 0.3, true
+			}
+		}
+		trapped = trapped && search(off)
 	}
 	if best == nil {
 		return nil, fmt.Errorf("the search for the variances found no point")
 	}
 	polish(best, slope)
+	for i, v := range best {
+		if v*v < 1e-12 { // zero but for rounding
+			best[i] = 0
+		}
+	}
 	if err := move(best); err != nil {
 		return nil, err
 	}

@@ -16,7 +16,9 @@ type NestedLeftOut struct {
 // Held are the variances, which are those of the fit, to which the row itself
 // belonged; fitted anew without the row are the fixed effects and every BLUP,
 // so that a species alone in its genus, family or order is predicted from the
-// next level up, or from the line. With
+// next level up, or from the line. Fitting the variances anew as well raises the
+// root mean square error by 0.2 % in the measured mammals and birds, 2 % in
+// reptiles and 1 % in amphibians. With
 //
 //	P = V⁻¹ − V⁻¹X(X'V⁻¹X)⁻¹X'V⁻¹
 //

@@ -195,8 +195,8 @@ func (s *nestedSums) up(theta [levels]float64, st *nestedState) error {
 	q := append(make([]float64, 0, d*d), s.q...)
 	// ln|V| is the logarithm of a product: one logarithm serves many factors.
 	logdet, product := 0.0, 1.0
-	// close adds a node's own intercept to the sums t of its rows.
-	close := func(l, k int, t []float64) {
+	// include adds a node's own intercept to the sums t of its rows.
+	include := func(l, k int, t []float64) {
 		th := theta[l]
 		div := 1 + th*t[0]
 		st.div[l][k] = div
@@ -217,7 +217,7 @@ func (s *nestedSums) up(theta [levels]float64, st *nestedState) error {
 	}
 	copy(st.t[levelGenus], s.raw)
 	for g := range s.node[levelGenus] {
-		close(levelGenus, g, st.t[levelGenus][g*d:(g+1)*d])
+		include(levelGenus, g, st.t[levelGenus][g*d:(g+1)*d])
 	}
 	for l := levelFamily; l >= levelOrder; l-- {
 		below := st.t[l+1]
@@ -229,7 +229,7 @@ func (s *nestedSums) up(theta [levels]float64, st *nestedState) error {
 					t[i] += v
 				}
 			}
-			close(l, k, t)
+			include(l, k, t)
 		}
 	}
 
@@ -275,8 +275,8 @@ type nodeSums struct {
 }
 
 // down visits every node from the orders down with its sums. The slice is
-// reused: visit must not keep it. Below a node that has been closed, with t of
-// the closed node and t₀ of the inner one,
+// reused: visit must not keep it. Inside a node whose own
+// intercept has been included, with t of that node and 1ᵢ some of its rows,
 //
 //	A'(W+θ11')⁻¹1ᵢ = A'W⁻¹1ᵢ − θ·(1'W⁻¹1ᵢ)·t
 func (s *nestedSums) down(st *nestedState, visit func(l, order, family, genus int, sums nodeSums)) {

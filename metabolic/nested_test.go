@@ -74,12 +74,19 @@ func TestNestedAgainstR(t *testing.T) {
 				t.Fatal(err)
 			}
 			byName := map[string]NestedLeftOut{}
-			var ss, standardised float64
+			var ss, standardised, within90 float64
 			for i, l := range left {
 				byName[strings.ReplaceAll(rows[i].fitRow["scientific_name"], " ", "_")] = l
 				d := l.Observed - l.Predicted
 				ss += d * d
 				standardised += d * d / (l.SD * l.SD)
+				if math.Abs(d) < 1.6448536269514722*l.SD {
+					within90++
+				}
+			}
+			// The sd means what it says: nine species in ten lie within 1.645 of it.
+			if share := within90 / float64(len(rows)); share < 0.88 || share > 0.92 {
+				t.Errorf("%.1f %% of the species lie within their 90 %% range when left out", 100*share)
 			}
 			n := float64(len(rows))
 			checked := 0
@@ -117,6 +124,8 @@ func TestNestedAgainstR(t *testing.T) {
 					wantDigits(t, figure, math.Sqrt(ss/n), want, 1e-7)
 				case figure == "leave_one_out_mean_square_standardised":
 					wantDigits(t, figure, standardised/n, want, 1e-6)
+				case figure == "leave_one_out_within_90":
+					wantClose(t, figure, within90, want, 0)
 				case strings.HasPrefix(figure, "left_out_mean_"):
 					wantClose(t, figure, byName[strings.TrimPrefix(figure, "left_out_mean_")].Predicted, want, 1e-7)
 				case strings.HasPrefix(figure, "left_out_sd_"):
@@ -210,6 +219,94 @@ func TestNestedBeatsGroupConstants(t *testing.T) {
 			t.Errorf("%s from group constants: %.5f, want %.4f", c.class, got, c.groups)
 		}
 	}
+}
+
+// Terms tried and left out, by the same error, rms ln over all species left out
+// in turn; figures to four digits by R 4.2.2, nlme and the dense matrix. The best
+// of them is mass by temperature in reptiles, 3 % lower; with the variances
+// fitted anew as well its mean gain in squared error is 1.2 of its standard
+// errors and rests on a few animals far from the rest, so that the plain line
+// stays. A species asked for by name has no "not basal" of its own. Own slopes by
+// order or family, with lme alone: mammals 0.2609 and 0.2596, birds 0.2118 and
+// 0.2138, reptiles 0.4022 and 0.3978, amphibians 0.4294 both.
+func TestNestedTermsTried(t *testing.T) {
+	is := func(column, value string) func(measuredRow) float64 {
+		return func(r measuredRow) float64 {
+			if r.fitRow[column] == value {
+				return 1
+			}
+			return 0
+		}
+	}
+	square := func(r measuredRow) float64 { return r.Covariates[0] * r.Covariates[0] }
+	for _, c := range []struct {
+		class, term string
+		extra       func(measuredRow) float64
+		plain, with float64
+	}{
+		{"Mammalia", "not basal", is("grade", "not basal"), 0.2605, 0.2570},
+		{"Mammalia", "marsupial", is("group", "marsupial"), 0.2605, 0.2602},
+		{"Mammalia", "(ln mass)²", square, 0.2605, 0.2606},
+		{"Aves", "passerine", is("group", "passerine bird"), 0.2138, 0.2137},
+		{"Aves", "(ln mass)²", square, 0.2138, 0.2135},
+		{"Reptilia", "(ln mass)²", square, 0.4022, 0.4020},
+		{"Reptilia", "ln mass by temperature", func(r measuredRow) float64 { return r.Covariates[0] * r.Covariates[1] }, 0.4022, 0.3911},
+		{"Amphibia", "salamander", is("group", "salamander"), 0.4294, 0.4318},
+		{"Amphibia", "ln mass by temperature", func(r measuredRow) float64 { return r.Covariates[0] * r.Covariates[1] }, 0.4294, 0.4292},
+	} {
+		t.Run(c.class+" "+c.term, func(t *testing.T) {
+			rows := measuredRates(t, c.class)
+			if got := leftOutError(t, nestedRows(rows)); math.Abs(got-c.plain) > 5.1e-5 {
+				t.Errorf("plain %.5f, want %.4f", got, c.plain)
+			}
+			wider := nestedRows(rows)
+			for i, r := range rows {
+				wider[i].Covariates = append(slices.Clone(r.Covariates), c.extra(r))
+			}
+			if got := leftOutError(t, wider); math.Abs(got-c.with) > 5.1e-5 {
+				t.Errorf("with the term %.5f, want %.4f", got, c.with)
+			}
+		})
+	}
+}
+
+// Fitting the variances anew without each species, too, changes little: what
+// LeaveOneOut holds does not flatter. Figures by R 4.2.2, lme run to convergence
+// without each row in turn.
+func TestNestedLeaveOneOutHoldsLittle(t *testing.T) {
+	for _, c := range []struct {
+		class      string
+		held, anew float64
+	}{{"Reptilia", 0.4022, 0.4104}, {"Amphibia", 0.4294, 0.4349}} {
+		rows := nestedRows(measuredRates(t, c.class))
+		var e []float64
+		for i, r := range rows {
+			p, err := mustFitNested(t, append(slices.Clone(rows[:i]), rows[i+1:]...)).Predict(r.Order, r.Family, r.Genus, r.Covariates)
+			if err != nil {
+				t.Fatal(err)
+			}
+			e = append(e, p.Mean-r.Y)
+		}
+		if got := rms(e); math.Abs(got-c.anew) > 5.1e-5 {
+			t.Errorf("%s: variances fitted anew %.5f, want %.4f", c.class, got, c.anew)
+		}
+		if got := leftOutError(t, rows); math.Abs(got-c.held) > 5.1e-5 {
+			t.Errorf("%s: variances held %.5f, want %.4f", c.class, got, c.held)
+		}
+	}
+}
+
+func leftOutError(t *testing.T, rows []NestedRow) float64 {
+	t.Helper()
+	left, err := mustFitNested(t, rows).LeaveOneOut(rows)
+	if err != nil {
+		t.Fatal(err)
+	}
+	var e []float64
+	for _, l := range left {
+		e = append(e, l.Predicted-l.Observed)
+	}
+	return rms(e)
 }
 
 func rms(v []float64) float64 {
@@ -316,28 +413,29 @@ func (m *dense) predict(a NestedRow, s2 float64) (mean, sd float64) {
 // values come from a seed: values drawn one by one shrink to rows all alike,
 // which no fit can tell apart.
 func tree(rt *rapid.T) []NestedRow {
-	random := rand.New(rand.NewPCG(rapid.Uint64().Draw(rt, "seed"), 1))
-	n := rapid.IntRange(24, 50).Draw(rt, "n")
-	covariates := rapid.IntRange(1, 2).Draw(rt, "covariates")
-	effect := func(size float64) []float64 {
-		out := make([]float64, 4*3*3)
-		for i := range out {
-			out[i] = size * random.NormFloat64()
-		}
-		return out
-	}
 	size := func() float64 { return rapid.SampledFrom([]float64{0, 0.3, 1}).Draw(rt, "spread of a level") }
-	order, family, genus := effect(size()), effect(size()), effect(size())
+	return treeOf(rapid.Uint64().Draw(rt, "seed"), rapid.IntRange(24, 50).Draw(rt, "n"), rapid.IntRange(1, 2).Draw(rt, "covariates"),
+		[levels]float64{size(), size(), size()})
+}
+
+func treeOf(seed uint64, n, covariates int, spread [levels]float64) []NestedRow {
+	random := rand.New(rand.NewPCG(seed, 1))
+	var effect [levels][4 * 3 * 2]float64
+	for l := range effect {
+		for i := range effect[l] {
+			effect[l][i] = spread[l] * random.NormFloat64()
+		}
+	}
 	var rows []NestedRow
 	for range n {
 		o, f, g := random.IntN(4), random.IntN(3), random.IntN(2)
 		// A family of the same name in two orders is two families. The rows are
-		// twice the genera and more, or there may be no residual to find.
+		// as many as the genera and more, or there may be no residual to find.
 		r := NestedRow{Order: fmt.Sprint("order ", o), Family: fmt.Sprint("family ", f), Genus: fmt.Sprint("genus ", g)}
 		for range covariates {
 			r.Covariates = append(r.Covariates, 3*random.NormFloat64())
 		}
-		r.Y = 0.7*r.Covariates[0] + order[o] + family[3*o+f] + genus[9*o+3*f+g] + 0.5*random.NormFloat64()
+		r.Y = 0.7*r.Covariates[0] + effect[0][o] + effect[1][3*o+f] + effect[2][6*o+2*f+g] + 0.5*random.NormFloat64()
 		rows = append(rows, r)
 	}
 	return rows
@@ -585,14 +683,14 @@ func scattered(orders, families, genera, species int, spread [levels]float64) []
 // species of every genus differ more than the genera do.
 func TestNestedReachesZeroVariance(t *testing.T) {
 	f := mustFitNested(t, scattered(6, 3, 3, 2, [levels]float64{0.5, 0, 0}))
-	if f.VarGenus > 1e-8*f.VarResidual || f.VarFamily > 1e-8*f.VarResidual {
-		t.Errorf("variances of family %v and genus %v, want zero beside the residual %v", f.VarFamily, f.VarGenus, f.VarResidual)
+	if f.VarGenus != 0 || f.VarFamily != 0 {
+		t.Errorf("variances of family %v and genus %v, want zeros", f.VarFamily, f.VarGenus)
 	}
 	if f.VarOrder < f.VarResidual {
 		t.Errorf("variance of order %v, residual %v", f.VarOrder, f.VarResidual)
 	}
 	f = mustFitNested(t, scattered(6, 3, 3, 2, [levels]float64{0, 0, 0}))
-	if f.VarOrder+f.VarFamily+f.VarGenus > 1e-8*f.VarResidual {
+	if f.VarOrder != 0 || f.VarFamily != 0 || f.VarGenus != 0 {
 		t.Errorf("variances %v %v %v, want zeros", f.VarOrder, f.VarFamily, f.VarGenus)
 	}
 	// Without any level the fit is the least-squares line.
@@ -614,6 +712,36 @@ func TestNestedReachesZeroVariance(t *testing.T) {
 	e := line.At(9)
 	wantClose(t, "mean", p.Mean, e.Mean, 1e-7)
 	wantClose(t, "sd", p.SD, e.SEPrediction, 1e-6)
+}
+
+// Small tables whose likelihood has two hills, on which a search from one place
+// ends on the lower: no point of a grid may be higher than the fit.
+func TestNestedFindsTheHighestHill(t *testing.T) {
+	grid := []float64{0}
+	for th := 0.01; th < 20; th *= 1.3 {
+		grid = append(grid, th)
+	}
+	for _, seed := range []uint64{1560, 1718, 2407, 2749, 3098} {
+		rows := treeOf(seed, 26, 1, [levels]float64{0.3, 0.3, 0.3})
+		f := mustFitNested(t, rows)
+		s, err := newNestedSums(rows)
+		if err != nil {
+			t.Fatal(err)
+		}
+		var st nestedState
+		for _, o := range grid {
+			for _, fam := range grid {
+				for _, g := range grid {
+					if err := s.up([levels]float64{o, fam, g}, &st); err != nil {
+						t.Fatal(err)
+					}
+					if st.ll > f.LogLikREML+1e-9 {
+						t.Fatalf("seed %d: θ %v has log-likelihood %.10g, the fit's %v has %.10g", seed, st.theta, st.ll, thetaOf(f), f.LogLikREML)
+					}
+				}
+			}
+		}
+	}
 }
 
 // What the rows cannot tell apart is held at zero and said.

@@ -83,6 +83,7 @@ for (class in c("Mammalia", "Aves", "Reptilia", "Amphibia")) {
   left <- drop(P %*% y) / diag(P)
   figure(class, "leave_one_out_rms", sqrt(mean(left^2)))
   figure(class, "leave_one_out_mean_square_standardised", mean(left^2 * diag(P)))
+  figure(class, "leave_one_out_within_90", sum(abs(left) * sqrt(diag(P)) < qnorm(0.95)))
 
   a <- asked[asked$class == class, ]
   newX <- model.matrix(fixed[-2], a)

@@ -1,0 +1,85 @@
+package main
+
+import (
+	"bytes"
+	"os"
+	"os/exec"
+	"path/filepath"
+	"strings"
+	"testing"
+	"unicode/utf8"
+
+	"github.com/spf13/cobra"
+	"github.com/spf13/pflag"
+
+	"tayra/dose"
+)
+
+func everyCommand() []*cobra.Command {
+	root := newRoot()
+	return append([]*cobra.Command{root}, root.Commands()...)
+}
+
+// TestHelp: every command says what it is for, how it is written, an example,
+// and what each flag is; and fits an ordinary terminal.
+func TestHelp(t *testing.T) {
+	for _, c := range everyCommand() {
+		var b bytes.Buffer
+		writeHelp(&b, c)
+		if c.Short == "" || c.Example == "" || !strings.Contains(b.String(), "Examples:\n") {
+			t.Errorf("%s: no short text or no example", c.Name())
+		}
+		for line := range strings.Lines(b.String()) {
+			if n := utf8.RuneCountInString(strings.TrimRight(line, "\n")); n > helpWidth {
+				t.Errorf("%s: a line of %d columns: %q", c.Name(), n, line)
+			}
+			if strings.TrimRight(line, " \n") != strings.TrimRight(line, "\n") {
+				t.Errorf("%s: spaces at the end of %q", c.Name(), line)
+			}
+		}
+		c.Flags().VisitAll(func(f *pflag.Flag) {
+			if f.Usage == "" {
+				t.Errorf("%s --%s says nothing", c.Name(), f.Name)
+			}
+			if !strings.Contains(b.String(), flagHead(f)) {
+				t.Errorf("%s --%s is not shown", c.Name(), f.Name)
+			}
+		})
+	}
+}
+
+// TestExamplesRun runs the examples of every command's help in a shell, in a
+// folder with the files that they read.
+func TestExamplesRun(t *testing.T) {
+	template := string(dose.CaseTemplate("2026-11-30"))
+	proposing := strings.NewReplacer("#proposed:", "proposed:", "#  dose: 8 mg/kg", "  dose: 8.1 mg/kg", "#  interval: q8h", "  interval: q12h").Replace(template)
+	if proposing == template {
+		t.Fatal("the template has no sleeping proposal")
+	}
+	for _, c := range everyCommand() {
+		t.Run(c.Name(), func(t *testing.T) {
+			folder := t.TempDir()
+			// The program's own example begins with `tayra new case.yaml`.
+			if c.HasParent() {
+				write(t, folder, "case.yaml", template)
+			}
+			write(t, folder, "check.yaml", proposing)
+			shell := exec.Command("sh", "-e", "-c", c.Example)
+			shell.Dir = folder
+			out, err := shell.CombinedOutput()
+			if err != nil {
+				t.Errorf("%v\n%s\n%s", err, c.Example, out)
+			}
+			if len(out) == 0 && c.Name() != "new" && c.Name() != "man" {
+				t.Error("the examples print nothing")
+			}
+		})
+	}
+}
+
+func write(t *testing.T, folder, name, text string) {
+	t.Helper()
+	if err := os.WriteFile(filepath.Join(folder, name), []byte(text), 0o666); err != nil {
+		t.Fatal(err)
+	}
+}

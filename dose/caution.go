@@ -64,6 +64,7 @@ const (
 	Accumulation     Slug = "accumulation"
 	FlipFlop         Slug = "flip-flop"
 	NameTakenAs      Slug = "name-taken-as"
+	DrugNotNamed     Slug = "drug-not-named"
 	HazardOnFile     Slug = "hazard" // followed by the row's id: hazard-h019
 )
 

@@ -118,6 +118,8 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 			_, why := species.CommonlyEaten(c.Patient.Animal)
 			*t = fmt.Sprintf("Animals of this kind are eaten (%s). Will this one, its milk or its eggs ever be? Write food_producing in the case. A withdrawal period is not computed: ask the local authority.", why)
 		}
+	case DrugNotNamed:
+		*t = "No drug is named: what is known of it in this animal could not be looked up. Nothing has been ruled out."
 	case ControlledDrug:
 		*t = "A controlled drug: local law on keeping, recording and giving it applies."
 	case JuvenilePatient:

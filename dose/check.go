@@ -208,8 +208,15 @@ func (k *checker) patient(in *CaseInput, c *Case) {
 	p := &in.Patient
 	c.Patient.Name = k.text(p.Name, "patient.name")
 	c.Patient.Animal = k.animal(p.Species, p.Place, "patient.species")
-	c.Patient.Mass, _ = need(k, p.Mass, p.Place, "patient.mass", "write the body mass with its unit, such as 41 kg", metabolic.ParseBodyMass)
+	c.Patient.Mass, _ = need(k, p.Mass, p.Place, "patient.mass", massRemedy, metabolic.ParseBodyMass)
 	c.Patient.Temperature, c.Patient.HasTemperature = read(k, p.Temperature, "patient.temperature", metabolic.ParseTemperature)
+	k.state(p, c)
+}
+
+const massRemedy = "write the body mass with its unit, such as 41 kg"
+
+// state reads the words that tell what state the patient is in.
+func (k *checker) state(p *PatientInput, c *Case) {
 	c.Patient.Stage = word(k, p.Stage, "patient.stage", stageWords)
 	for i, e := range p.Condition {
 		c.Patient.Conditions |= word(k, e, fmt.Sprintf("patient.condition[%d]", i), conditionMap())

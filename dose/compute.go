@@ -19,6 +19,10 @@ type numbers struct {
 	fit     *fitNumbers
 
 	proposedRaised []raised // what a proposed regimen raises of itself
+
+	// hazards looks hazards up; nil is species.MatchHazards. A batch, which
+	// asks the same again and again, remembers the answers.
+	hazards func(drug, class string, a *species.Animal, route string) []species.HazardMatch
 }
 
 // modelNumbers is the draft from one model.

@@ -37,7 +37,11 @@ func raiseHazards(c *Case, n *numbers) {
 	if route == "" {
 		route = c.Models[n.from].Route
 	}
-	matches := species.MatchHazards(c.Drug.Name, c.Drug.Class, c.Patient.Animal, route)
+	find := n.hazards
+	if find == nil {
+		find = species.MatchHazards
+	}
+	matches := find(c.Drug.Name, c.Drug.Class, c.Patient.Animal, route)
 	for i := range matches {
 		m := &matches[i]
 		n.raised = append(n.raised, raised{slug: HazardOnFile, level: hazardLevel(m, c), model: -1, hazard: m})

@@ -287,6 +287,9 @@ func raiseKinetics(m *Model, mn *modelNumbers, i int, th *Thresholds, add adder)
 // raiseDrug is what the drug raises, whatever the model.
 func raiseDrug(c *Case, n *numbers, add adder) {
 	d := &c.Drug
+	if d.Name == UnnamedDrug {
+		add(DrugNotNamed, Warn, -1)
+	}
 	if d.Margin == Narrow {
 		add(NarrowMargin, Stop, -1)
 	}

@@ -38,6 +38,31 @@ func stripLines(w *dose.Worksheet) []stripLine {
 // stripHeight is how many points the strip needs on paper.
 func stripHeight(w *dose.Worksheet) float64 { return 62 + 14*float64(len(stripLines(w))) }
 
+// toModelInterval carries a dose of the draft to the model's interval, at which
+// the doses of the strip are given, by its daily amount: that is what the ranges
+// are about. It is 1 where the draft keeps the interval.
+func toModelInterval(w *dose.Worksheet) float64 {
+	from := &w.Drafts[w.DraftedFrom.Index]
+	if w.Drafted.IntervalH == nil || from.IntervalH == nil || *w.Drafted.IntervalH == *from.IntervalH {
+		return 1
+	}
+	return *from.IntervalH / *w.Drafted.IntervalH
+}
+
+// stripWords says what the strip shows.
+func stripWords(w *dose.Worksheet) string {
+	from := draftedModel(w)
+	switch {
+	case from.Kind == "once":
+		return "The dose by clearance, under every basis that both animals have and under other exponents, with both ranges."
+	case from.Kind == "infusion":
+		return "The rate per kg under every basis that both animals have and under other exponents, with both ranges of the draft."
+	case toModelInterval(w) != 1:
+		return "The dose per kg " + intervalWords(from.Kind, from.IntervalH) + ", the model's interval, under every basis that both animals have and under other exponents. The draft and its ranges are carried to that interval by the daily amount."
+	}
+	return "The dose per kg " + intervalWords(from.Kind, from.IntervalH) + " under every basis that both animals have and under other exponents, with both ranges of the draft."
+}
+
 // stripPlot is the dose per kg at the model's interval under every basis and
 // exponent, on a log axis with both ranges of the draft: the eye sees in a
 // second whether they agree. Nil where there is no draft.
@@ -47,8 +72,10 @@ func stripPlot(w *dose.Worksheet) *plot.Plot {
 	if d == nil || len(lines) == 0 {
 		return nil
 	}
-	from := &w.Drafts[w.DraftedFrom.Index]
-	low, high := math.Min(d.Range90.Low, from.DosePerKg[0]), math.Max(d.Range90.High, from.DosePerKg[1])
+	f := toModelInterval(w)
+	range90, range50 := [2]float64{d.Range90.Low * f, d.Range90.High * f}, [2]float64{d.Range50.Low * f, d.Range50.High * f}
+	drafted := [2]float64{d.DosePerKg[0] * f, d.DosePerKg[1] * f}
+	low, high := math.Min(range90[0], drafted[0]), math.Max(range90[1], drafted[1])
 	for _, l := range lines {
 		low, high = math.Min(low, l.low), math.Max(high, l.high)
 	}
@@ -66,12 +93,12 @@ func stripPlot(w *dose.Worksheet) *plot.Plot {
 		// The ranges, at the top: nine in ten as an open bar, even odds as a
 		// filled one inside it, the drafted dose as a cut through both.
 		y := ty(rows - 0.8)
-		c.StrokeLines(lineStyle(0.8, 0), box(y, vg.Points(6), d.Range90.Low, d.Range90.High))
-		c.FillPolygon(ink, box(y, vg.Points(3), d.Range50.Low, d.Range50.High))
-		writeText(c, sizeSmall, false, text.XLeft, text.YBottom, vg.Point{X: tx(d.Range90.Low) + 1, Y: y + vg.Points(8)},
-			fmt.Sprintf("open bar: nine in ten, %s to %s; filled: even odds, %s to %s; line: drafted", metabolic.Significant(d.Range90.Low, 3), metabolic.Significant(d.Range90.High, 3), metabolic.Significant(d.Range50.Low, 3), metabolic.Significant(d.Range50.High, 3)))
-		for k, v := range d.DosePerKg {
-			if k == 1 && d.DosePerKg[0] == v {
+		c.StrokeLines(lineStyle(0.8, 0), box(y, vg.Points(6), range90[0], range90[1]))
+		c.FillPolygon(ink, box(y, vg.Points(3), range50[0], range50[1]))
+		writeText(c, sizeSmall, false, text.XLeft, text.YBottom, vg.Point{X: tx(range90[0]) + 1, Y: y + vg.Points(8)},
+			fmt.Sprintf("open bar: nine in ten, %s to %s; filled: even odds, %s to %s; line: drafted", metabolic.Significant(range90[0], 3), metabolic.Significant(range90[1], 3), metabolic.Significant(range50[0], 3), metabolic.Significant(range50[1], 3)))
+		for k, v := range drafted {
+			if k == 1 && drafted[0] == v {
 				break
 			}
 			st := lineStyle(0.6, 1)

@@ -14,6 +14,9 @@ import (
 // the first letter that stands in the way.
 type LetterError struct {
 	Field    string // where the text stands, such as patient.name
+	File     string // the file that the text was read from, if any
+	Line     int    // the place of the text in it, counted from 1; 0 if not known
+	Column   int
 	Text     string // the text as it was given
 	Rune     rune   // the letter; utf8.RuneError for bytes that are no letter
 	Position int    // its place in the text, letters counted from 1
@@ -21,9 +24,19 @@ type LetterError struct {
 	instead  string
 }
 
-// Error names the field, the letter with its code point, and what to write.
+// Error names the field, the letter with its code point, and what to write,
+// after the file and the place in it where they are known:
+//
+//	FILE:LINE:COLUMN: FIELD: letter N: what is wrong; what to write instead
 func (e *LetterError) Error() string {
-	return fmt.Sprintf("%s: letter %d: %s; %s", e.Field, e.Position, e.what, e.instead)
+	at := ""
+	if e.File != "" {
+		at = e.File + ": "
+		if e.Line > 0 {
+			at = fmt.Sprintf("%s:%d:%d: ", e.File, e.Line, e.Column)
+		}
+	}
+	return fmt.Sprintf("%s%s: letter %d: %s; %s", at, e.Field, e.Position, e.what, e.instead)
 }
 
 // CheckText returns s as it goes on paper (in Unicode normalization form C) or

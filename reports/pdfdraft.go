@@ -1,0 +1,160 @@
+package reports
+
+import (
+	"strings"
+
+	"tayra/dose"
+	"tayra/metabolic"
+)
+
+// sizeAmount is the second line of the draft: the dose per kg.
+const sizeAmount = 11.0
+
+// draftBox is what the first glance takes in: what to give, how far off it may
+// be, and the gravest caution.
+func (s *sheet) draftBox() {
+	s.doc.naming("the draft")
+	ws, d := s.ws, s.ws.Drafted
+	s.f.box(func(f *flow) {
+		f.split(paraStyle{gap: -1}, []run{bold("Draft of a starting dose")}, []run{plain("for a veterinarian's judgement; not a prescription")})
+		f.paragraph(paraStyle{size: sizeDraft, gap: 2}, bold(orderWords(ws)))
+		if give := giveWords(ws.Product, d.Unit); give != "" {
+			f.paragraph(paraStyle{size: sizeDraft, gap: -1}, bold("= "+give))
+		} else if ws.Product != nil {
+			f.paragraph(paraStyle{size: sizeAmount, gap: -1}, bold("How to measure it out: see Syringe and course."))
+		}
+		perKg := []run{bold(perKgPair(d.DosePerKg, d.Unit))}
+		if daily := dailyPair(d.DailyPerKg, d.Unit); daily != "" {
+			perKg = append(perKg, plain(", in a day "+strings.TrimSuffix(daily, "/day")))
+		}
+		f.paragraph(paraStyle{size: sizeAmount, gap: 1}, perKg...)
+		if d.Plan == string(dose.PlanOnce) {
+			f.para(bold("Start at the low end."), plain(" The two ends follow two rules: by clearance it matches the model's area under the curve, by volume its peak. No interval is drafted."))
+		}
+		if l := ws.Loading; l != nil && l.DosePerKg != nil && l.PerAdministration != nil {
+			runs := []run{bold("Loading dose, once, first: " + amountPair(*l.PerAdministration, l.Unit)), plain(" (" + perKgPair(*l.DosePerKg, l.Unit))}
+			if l.Range90 != nil {
+				runs = append(runs, plain("; nine times in ten "+perKgRange(*l.Range90, l.Unit)))
+			}
+			f.para(append(runs, plain(")."))...)
+		}
+		s.rangeTable(f)
+		f.para(plain(d.Meaning))
+		if s.from != nil {
+			from := "Drafted from the " + modelWords(s.from) + "."
+			if d.Route == "" {
+				from += " No route is given."
+			}
+			f.paragraph(paraStyle{gap: 3}, plain(from))
+		}
+		s.worst(f)
+	})
+}
+
+// rangeTable sets the ranges beside the dose that they are about.
+func (s *sheet) rangeTable(f *flow) {
+	ws, d := s.ws, s.ws.Drafted
+	t := pageTable{columns: []tableColumn{{}, {head: "drafted"}, {head: "as likely as not within"}, {head: "nine times in ten within"}}}
+	row := func(name, drafted, range50, range90 string) {
+		t.rows = append(t.rows, tableRow{cells: [][]run{{plain(name)}, {bold(drafted)}, {bold(range50)}, {bold(range90)}}})
+	}
+	amount := "amount each time"
+	if _, perHour := unitOf(d.Unit); perHour {
+		amount = "amount per hour"
+	}
+	if d.Plan == string(dose.PlanOnce) && s.from != nil {
+		by := ""
+		for i := range ws.Bases {
+			if b := &ws.Bases[i]; b.Drafted && b.DosePerKg != nil {
+				by = perKgPair(*b.DosePerKg, d.Unit)
+			}
+		}
+		row("by clearance", by, perKgRange(d.Range50, d.Unit), perKgRange(d.Range90, d.Unit))
+		row("amount by clearance", "", amountRange(d.Range50Amount, d.Unit), amountRange(d.Range90Amount, d.Unit))
+		if r := s.from.VolumeRange90; r != nil {
+			row("by volume", perKgPair(s.from.DosePerKg, d.Unit), "", perKgRange(*r, d.Unit))
+		}
+		amount = "amounts of both ends"
+		row(amount, amountPair(d.PerAdministration, d.Unit), "", "")
+	} else {
+		row("dose per kg", perKgPair(d.DosePerKg, d.Unit), perKgRange(d.Range50, d.Unit), perKgRange(d.Range90, d.Unit))
+		row(amount, amountPair(d.PerAdministration, d.Unit), amountRange(d.Range50Amount, d.Unit), amountRange(d.Range90Amount, d.Unit))
+	}
+	for _, end := range []struct {
+		kg float64
+		at *dose.Pair
+	}{{ws.Patient.MassLowKg, d.AtLowMass}, {ws.Patient.MassHighKg, d.AtHighMass}} {
+		if end.at != nil {
+			row("if it weighs "+metabolic.FormatMass(metabolic.Mass(end.kg)), amountPair(*end.at, d.Unit), "", "")
+		}
+	}
+	f.table(t)
+}
+
+// worst says the gravest caution and names every one that asks for a decision,
+// so that none is missed where the list runs over the page.
+func (s *sheet) worst(f *flow) {
+	cs := s.ws.Cautions
+	f.rule(rulerHair)
+	if len(cs) == 0 {
+		f.paragraph(paraStyle{size: sizeHead, gap: 2}, bold(worstWords(s.ws)))
+		return
+	}
+	var names []string
+	for i := range cs {
+		if cs[i].Level != dose.Note {
+			names = append(names, cs[i].Slug)
+		}
+	}
+	runs := []run{bold(worstWords(s.ws))}
+	n := len(f.bands)
+	f.paragraph(paraStyle{size: sizeHead, gap: 2, indent: indentMark + 2}, runs...)
+	f.bands[n].shapes = append(f.bands[n].shapes, levelShape(cs[0].Level, f.x, sizeHead))
+	if len(names) > 0 {
+		f.paragraph(paraStyle{indent: indentMark + 2, gap: -1}, plain(strings.Join(names, ", ")+"."))
+	}
+}
+
+// stopBox stands in the place of the draft and holds no number.
+func (s *sheet) stopBox() {
+	s.doc.naming("the stops")
+	ws := s.ws
+	stops := activeStops(ws)
+	s.f.box(func(f *flow) {
+		n := len(f.bands)
+		f.paragraph(paraStyle{size: sizeDraft, gap: -1, indent: 24}, bold("STOP: no dose is drafted"))
+		f.bands[n].shapes = append(f.bands[n].shapes, shape{kind: markStop, x: f.x, y: sizeDraft*lineBase - 0.73*sizeDraft/2 - 8, w: 16})
+		f.paragraph(paraStyle{size: sizeAmount, gap: 2}, bold(ws.Drug.Name), plain(", "+patientName(&ws.Patient)))
+		final := false
+		for _, c := range stops {
+			final = final || dose.CannotOverride(c.Slug)
+			f.item(markedItem{mark: markStop, text: []run{bold(c.Slug + ": "), plain(capital(stopWords(c)) + ".")}})
+		}
+		next := "Read the cautions. Whoever goes on writes under overrides in the case file, for each stop by its name, why it does not hold here; the reasons are then printed on every page."
+		if final {
+			next = "This cannot be overridden: correct the case, or use another source."
+			for _, c := range stops {
+				if dose.CannotOverride(c.Slug) && len(stops) > 1 {
+					next = "The stop " + c.Slug + " cannot be overridden: correct the case, or use another source."
+				}
+			}
+		}
+		f.para(plain(next))
+		f.paragraph(paraStyle{gap: 3}, plain("Cautions in all: "+countWords(ws.Cautions)+"."))
+	})
+}
+
+// levelShape is the mark of a level, beside text of the given size.
+func levelShape(l dose.Level, x, size float64) shape {
+	return shape{kind: levelMark(l), x: x, y: size*lineBase - 0.73*size/2 - tickSide/2, w: tickSide, line: 1}
+}
+
+func levelMark(l dose.Level) mark {
+	switch l {
+	case dose.Stop:
+		return markStop
+	case dose.Warn:
+		return markWarn
+	}
+	return markNote
+}

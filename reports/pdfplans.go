@@ -1,0 +1,195 @@
+package reports
+
+import (
+	"strings"
+
+	"tayra/dose"
+	"tayra/metabolic"
+)
+
+// theCase is what the case says of animal and drug.
+func (s *sheet) theCase() {
+	f, ws, p := s.f, s.ws, &s.ws.Patient
+	f.heading("The case")
+	yes := func(v string) string {
+		switch v {
+		case "true":
+			return "yes"
+		case "false":
+			return "no"
+		}
+		return "not said"
+	}
+	animal := p.Species
+	if p.CommonName != "" {
+		animal = p.CommonName + " (" + p.Species + ")"
+	}
+	if typed := strings.ToLower(p.Typed); typed != "" && typed != strings.ToLower(p.CommonName) && typed != strings.ToLower(p.Species) {
+		animal += ", written as " + p.Typed
+	}
+	condition := "nothing said"
+	if len(p.Condition) > 0 {
+		condition = strings.Join(p.Condition, ", ")
+	}
+	adults := "none on file"
+	if a := p.AdultMassKg; a != nil {
+		adults = metabolic.FormatRange(a[0], a[1], func(kg float64) string { return metabolic.FormatMass(metabolic.Mass(kg)) })
+	}
+	pairs := []keyValue{{"Case", []run{plain(caseWords(ws))}}, {"Prepared by", []run{plain(orDefault(ws.PreparedBy, "not said"))}}}
+	add := func(key, value string) { pairs = append(pairs, keyValue{key, []run{plain(value)}}) }
+	if p.Name != "" {
+		add("Name", p.Name)
+	}
+	add("Animal", animal)
+	add("Family, order", p.Family+", "+p.Order)
+	add("Mass as written", p.MassTyped)
+	add("Adults weigh", adults)
+	if p.TemperatureC != nil {
+		add("Body temperature", metabolic.FormatCelsius(metabolic.Celsius(*p.TemperatureC)))
+	}
+	add("Stage", orDefault(p.Stage, "not said"))
+	add("Condition", condition)
+	add("Food-producing", yes(p.FoodProducing))
+	add("Drug", ws.Drug.Name+": "+drugWords(&ws.Drug))
+	f.pairs(2, pairs...)
+}
+
+// plans sets the plans of the model that the draft was taken from side by side,
+// under the ratios that they follow from. After a stop only the ratios stand.
+func (s *sheet) plans() {
+	f, ws, m := s.f, s.ws, s.from
+	if m == nil {
+		return
+	}
+	p := &ws.Patient
+	patient := animalWords(p.CommonName, p.Species)
+	f.heading("From " + modelName(m) + " to " + patient)
+	if ws.Drafted != nil {
+		f.para(plain("Model: " + modelWords(m) + ". Source: " + m.Source + "."))
+	} else {
+		f.para(plain("Model: " + modelName(m) + ". Source of its dose: " + m.Source + ". After a stop the dose itself is not printed; it stands in the attached case."))
+	}
+	if x := ws.DraftedFrom; x.Why != "" && len(ws.Drafts) > 1 {
+		f.para(plain("Chosen among the models as " + x.Why + "."))
+	}
+	t := pageTable{columns: []tableColumn{{}, {head: "body mass"}, {head: "metabolic rate"}, {head: "basis"}, {head: "body temperature"}}}
+	temperature := func(v *float64) string {
+		if v == nil {
+			return ""
+		}
+		return metabolic.FormatCelsius(metabolic.Celsius(*v))
+	}
+	rate := func(w float64) string { return metabolic.FormatPower(metabolic.Power(w)) }
+	t.rows = append(t.rows,
+		tableRow{cells: cellTexts("patient: "+patient, massWords(p.MassKg, p.MassLowKg, p.MassHighKg), rate(p.RateW), p.Basis, temperature(p.TemperatureC))},
+		tableRow{cells: cellTexts("model: "+modelName(m), massWords(m.MassKg, m.MassLowKg, m.MassHighKg), rate(m.RateW), m.Basis, temperature(m.TemperatureC))})
+	if p.TemperatureC == nil && m.TemperatureC == nil {
+		t.columns = t.columns[:4]
+	}
+	f.table(t)
+	r := &m.Ratios
+	f.para(plain("Patient over model: of mass, "), bold("M = "+metabolic.FormatRatio(r.Mass)), plain("; of metabolic rate, "), bold("R = "+metabolic.FormatRatio(r.Metabolic)),
+		plain("; of rate per kg, S = R/M, "), bold("S = "+metabolic.FormatRatio(r.Specific)), plain("."))
+	if len(m.Plans) == 0 || ws.Drafted == nil {
+		return
+	}
+	f.heading("The plans side by side")
+	f.table(planTable(m))
+	for i := range m.Plans {
+		q := &m.Plans[i]
+		text := paperText(q.Remark)
+		if x := massChoices(ws, q.AtLowMass, q.AtHighMass, q.Unit); x != "" {
+			text = joinNonEmpty(text, "amount: "+x, "; ")
+		}
+		if text != "" {
+			f.bullet(paraStyle{}, bold(capital(planWords(q.Name))+": "), plain(text+"."))
+		}
+	}
+	d := ws.Drafted
+	f.para(bold("Drafted: "+planWords(d.Plan)+", "+chosenWords(d)+". "), plain(capital(paperText(d.Why))+"."))
+}
+
+// planTable is one row a plan, the drafted one in bold.
+func planTable(m *dose.ModelDraft) pageTable {
+	amount := "amount each time"
+	if m.Kind == "infusion" {
+		amount = "amount per hour"
+	}
+	t := pageTable{columns: []tableColumn{{head: "plan"}, {head: "dose per kg", align: alignDecimal}, {head: amount, align: alignDecimal}, {head: "interval"}, {head: "in a day", align: alignDecimal}, {head: "average against the model's"}}}
+	for i := range m.Plans {
+		q := &m.Plans[i]
+		name, cell := planWords(q.Name), plain
+		if q.Name == m.Plan {
+			name, cell = name+" (drafted)", bold
+		}
+		average := averageWords(q.AverageRatio)
+		if q.Name == string(dose.PlanOnce) {
+			average = ""
+		}
+		row := tableRow{}
+		for _, c := range []string{name, perKgPair(q.DosePerKg, q.Unit), amountPair(q.PerAdministration, q.Unit), intervalWords(q.Name, q.IntervalH), dailyPair(q.DailyPerKg, q.Unit), average} {
+			row.cells = append(row.cells, []run{cell(c)})
+		}
+		t.rows = append(t.rows, row)
+	}
+	return t
+}
+
+// howFarOff shows what the ranges are made of.
+func (s *sheet) howFarOff() {
+	f, m := s.f, s.from
+	if m == nil || len(m.Parts) == 0 {
+		return
+	}
+	f.heading("How far off the dose may be")
+	if s.ws.Fit == nil {
+		f.para(plain("Standard deviations (sd) of ln dose. Nine times in ten: the dose divided by and times exp(1.645 × sd); as likely as not: by and times exp(0.674 × sd)."))
+	} else {
+		f.para(plain("Standard deviations (sd) of ln dose."))
+	}
+	t := pageTable{columns: []tableColumn{{head: "part"}, {head: "sd", align: alignDecimal}, {head: "what it is, and its source", grow: 1}}}
+	for i := range m.Parts {
+		q := &m.Parts[i]
+		text := paperText(q.Text)
+		if q.Source != "" {
+			text = joinNonEmpty(text, "Source: "+paperText(q.Source), ". ")
+		}
+		t.rows = append(t.rows, tableRow{cells: [][]run{{plain(q.Name)}, {plain(metabolic.Significant(q.SD, 3))}, {plain(text)}}, rule: strings.HasPrefix(q.Name, "together, of mg/kg") || strings.HasPrefix(q.Name, "the larger")})
+	}
+	f.table(t)
+}
+
+// trackRecord is what became of such predictions elsewhere.
+func (s *sheet) trackRecord() {
+	if len(s.ws.TrackRecord) == 0 {
+		return
+	}
+	s.f.heading("How such predictions have fared")
+	for _, x := range s.ws.TrackRecord {
+		s.f.bullet(paraStyle{}, plain(paperText(x)))
+	}
+}
+
+// suitability is the table of published reasons for and against scaling by
+// size.
+func (s *sheet) suitability() {
+	if len(s.ws.Suitability) == 0 {
+		return
+	}
+	f := s.f
+	f.heading("Does this drug suit scaling by size?")
+	t := pageTable{columns: []tableColumn{{head: "criterion"}, {head: "speaks"}, {head: "why", grow: 2}, {head: "source", grow: 1}}}
+	for i := range s.ws.Suitability {
+		c := &s.ws.Suitability[i]
+		verdict := []run{plain("unknown")}
+		switch c.Verdict {
+		case "speaks for":
+			verdict = []run{plain("for")}
+		case "speaks against":
+			verdict = []run{bold("AGAINST")}
+		}
+		t.rows = append(t.rows, tableRow{cells: [][]run{{plain(c.Name)}, verdict, {plain(paperText(c.Text))}, {plain(paperText(c.Source) + verifiedWords(c.Verified))}}, rule: true})
+	}
+	t.size = sizeSmall
+	f.table(t)
+}

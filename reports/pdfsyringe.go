@@ -1,0 +1,169 @@
+package reports
+
+import (
+	"fmt"
+	"strings"
+
+	"tayra/dose"
+	"tayra/metabolic"
+)
+
+// syringe says what to measure out, and what a course needs.
+func (s *sheet) syringe() {
+	f, p := s.f, s.ws.Product
+	if p == nil {
+		return
+	}
+	f.heading("Syringe and course")
+	text := "Product: " + strengthWords(p, s.unit)
+	if p.AmountPerPiece > 0 {
+		text += " per " + p.Form
+	}
+	if typed := asGiven(p.StrengthTyped); typed != "" && typed != strengthWords(p, s.unit) {
+		text += " (given as " + typed + ")"
+	}
+	switch {
+	case len(p.Pump) > 0:
+		text += "; the pump is set in steps of " + measuredWords(p.StepML, "mL/h")
+	case p.StepML > 0:
+		text += "; smallest step of the syringe " + measuredWords(p.StepML, "mL")
+	case p.StepPieces > 0:
+		text += "; smallest part given " + measuredWords(p.StepPieces, p.Form)
+	}
+	if p.Rounding == "down" {
+		text += "; rounded down, since the margin is narrow"
+	} else {
+		text += "; rounded to the nearest step"
+	}
+	if p.LargestPerSiteML > 0 {
+		text += "; at most " + measuredWords(p.LargestPerSiteML, "mL") + " at one site"
+	}
+	f.para(plain(text + "."))
+	for _, x := range p.Text {
+		f.para(plain(paperText(x)))
+	}
+	if give := giveWords(p, s.unit); give != "" && s.ws.Drafted != nil {
+		f.paragraph(paraStyle{size: sizeAmount}, bold("Give "+give+"."))
+	}
+	s.measureTable()
+	for i := range p.Ends {
+		s.administration(endWords(i, len(p.Ends)), &p.Ends[i])
+	}
+	for i := range p.Pump {
+		if a := &p.Pump[i]; a.BelowStep {
+			text := endWords(i, len(p.Pump)) + "the rate is under one step of the pump."
+			if a.DiluteTo > 0 {
+				text += " Dilute " + dilutionWords(a.DilutePartIn) + ", to " + perMLWords(a.DiluteTo, s.unit) + "."
+			}
+			f.bullet(paraStyle{}, plain(capital(text)))
+		}
+	}
+}
+
+// endWords says which end of a dose range something is of.
+func endWords(i, n int) string {
+	if n == 1 {
+		return ""
+	}
+	return [...]string{"low end: ", "high end: "}[i]
+}
+
+// measureTable is what is asked for, what is measured, and the course.
+func (s *sheet) measureTable() {
+	p := s.ws.Product
+	t := pageTable{columns: []tableColumn{{}, {head: "drafted"}, {head: "exactly"}, {head: "measured"}, {head: "holds"}, {head: "error"}, {head: "course"}, {head: "in all"}}}
+	end := func(i, n int) string { return strings.TrimSuffix(endWords(i, n), ": ") }
+	course, total := false, false
+	row := func(cells ...string) {
+		course, total = course || cells[6] != "", total || cells[7] != ""
+		t.rows = append(t.rows, tableRow{cells: cellTexts(cells...)})
+	}
+	containers := func(n int) string {
+		if n == 0 {
+			return ""
+		}
+		return " (" + countWord(float64(n), "container") + ")"
+	}
+	for i := range p.Ends {
+		a := &p.Ends[i]
+		cells := []string{end(i, len(p.Ends)), amountWords(a.AmountAsked, s.unit), metabolic.Significant(a.Exact, 4) + " " + a.Measure, "under one step", "", "", "", ""}
+		if d := a.Dilution; d != nil {
+			cells[3], cells[4], cells[5] = measuredWords(d.DrawML, "mL")+" of the dilution", amountWords(d.AmountGiven, s.unit), errorWords(d.ErrorPercent)
+		} else if !a.BelowStep {
+			cells[3], cells[4], cells[5] = measuredWords(a.Measured, a.Measure), amountWords(a.AmountGiven, s.unit), errorWords(a.ErrorPercent)
+		}
+		if p.Days > 0 && a.Administrations > 0 {
+			cells[6] = countWord(float64(a.Administrations), "dose") + " in " + countWord(p.Days, "day")
+			if a.Total > 0 {
+				cells[7] = measuredWords(a.Total, a.Measure) + containers(a.Containers)
+			}
+		}
+		row(cells...)
+	}
+	for i := range p.Pump {
+		a := &p.Pump[i]
+		asked := ""
+		if d := s.ws.Drafted; d != nil {
+			asked = amountWords(d.PerAdministration[min(i+2-len(p.Pump), 1)], s.unit)
+		}
+		cells := []string{end(i, len(p.Pump)), asked, metabolic.Significant(a.ExactMLPerH, 4) + " mL/h", "under one step", "", "", "", ""}
+		if !a.BelowStep {
+			cells[3], cells[4], cells[5] = measuredWords(a.MLPerH, "mL/h"), amountWords(a.AmountPerHour, s.unit), errorWords(a.ErrorPercent)
+		}
+		if p.Days > 0 && a.TotalML > 0 {
+			cells[6], cells[7] = countWord(p.Days, "day"), measuredWords(a.TotalML, "mL")+containers(a.Containers)
+		}
+		row(cells...)
+	}
+	if len(t.rows) == 0 {
+		return
+	}
+	t.drop(map[int]bool{0: len(t.rows) == 1, 6: !course, 7: !total})
+	s.f.table(t)
+}
+
+// administration is the dilution and the sites of one dose.
+func (s *sheet) administration(lead string, a *dose.Administration) {
+	f := s.f
+	if d := a.Dilution; d != nil {
+		f.together(func(f *flow) {
+			f.para(bold(capital(lead + "dilute " + dilutionWords(d.Factor) + ":")))
+			of := "the product"
+			n := 0
+			for i := range d.Steps {
+				x := &d.Steps[i]
+				n++
+				f.paragraph(paraStyle{indent: 10, gap: 2}, bold(fmt.Sprintf("%d. ", n)), plain("Take "+measuredWords(x.TakeML, "mL")+" of "+of+", add diluent "+measuredWords(x.AddML, "mL")+": "+
+					measuredWords(x.TotalML, "mL")+" of "+perMLWords(x.AmountPerML, s.unit)+". Label it."))
+				of = "that"
+			}
+			f.paragraph(paraStyle{indent: 10, gap: 2}, bold(fmt.Sprintf("%d. Draw %s", n+1, measuredWords(d.DrawML, "mL"))),
+				plain(" (exactly "+metabolic.Significant(d.ExactML, 4)+" mL): "+amountWords(d.AmountGiven, s.unit)+", "+errorWords(d.ErrorPercent)+"."))
+		})
+	} else if a.BelowStep {
+		f.bullet(paraStyle{}, plain(capital(lead+"the dose is under one step, and no usual dilution can be measured either.")))
+	}
+	if len(a.Sites) > 1 {
+		f.bullet(paraStyle{}, plain(capital(lead+"divide over "+countWord(float64(len(a.Sites)), "site")+": "+siteWords(a.Sites)+".")))
+	}
+}
+
+// siteWords lists the volumes at each site, equal ones counted.
+func siteWords(sites []float64) string {
+	var parts []string
+	for i := 0; i < len(sites); {
+		k := i
+		for k < len(sites) && sites[k] == sites[i] {
+			k++
+		}
+		part := measuredWords(sites[i], "mL")
+		if k-i > 1 {
+			part += fmt.Sprintf(" at each of %d", k-i)
+		} else {
+			part += " at one"
+		}
+		parts = append(parts, part)
+		i = k
+	}
+	return strings.Join(parts, ", ")
+}

@@ -75,7 +75,7 @@ func newTerminal(o TextOptions) *terminal {
 // spread sets two texts at the two ends of a line, or below one another where
 // they do not fit.
 func (t *terminal) spread(s style, left, right string) {
-	left, right = visible(left), visible(right)
+	left, right = shown(left), shown(right)
 	gap := t.width - columns(left) - columns(right)
 	if gap < 2 {
 		for _, l := range wrapColumns(left, t.width, t.width) {
@@ -313,6 +313,9 @@ func (t *terminal) proposed(ws *dose.Worksheet) {
 	}
 	t.heading("PROPOSED REGIMEN: " + verdict)
 	for _, v := range p.Verdict {
+		if strings.HasPrefix(v, "It raises") && len(p.Cautions) > 0 {
+			continue // they follow, with their marks
+		}
 		t.para(tableIndent, words{text: "-"}, words{text: v})
 	}
 	if d == nil {

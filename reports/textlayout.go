@@ -1,5 +1,5 @@
 // A terminal shows what it is sent. Two rules keep a worksheet on it honest:
-// every text passes visible before it is laid out, so that no text of the case
+// every text passes shown before it is laid out, so that no text of the case
 // can move the cursor, change a colour or turn the writing direction; and
 // nothing is told by colour alone.
 
@@ -45,6 +45,19 @@ type terminal struct {
 	left, right string
 }
 
+// boxLetters are those that the box around the draft is drawn with. No text can
+// hold them, so that none can pass for a box.
+var boxLetters = strings.NewReplacer("┏", `\u250f`, "┓", `\u2513`, "┗", `\u2517`, "┛", `\u251b`, "┃", `\u2503`)
+
+// shown is a text as it goes on the terminal.
+func shown(s string) string {
+	s = visible(s)
+	if strings.ContainsAny(s, "┏┓┗┛┃") {
+		s = boxLetters.Replace(s)
+	}
+	return s
+}
+
 // line writes one line of pieces.
 func (t *terminal) line(pieces ...words) {
 	t.b.WriteString(t.left)
@@ -54,7 +67,7 @@ func (t *terminal) line(pieces ...words) {
 		last--
 	}
 	for i, p := range pieces[:last] {
-		text := visible(p.text)
+		text := shown(p.text)
 		if i == last-1 && t.right == "" {
 			text = strings.TrimRight(text, " ")
 		}
@@ -77,7 +90,7 @@ func (t *terminal) blank() { t.line() }
 // heading opens a section.
 func (t *terminal) heading(title string) {
 	t.blank()
-	for _, l := range wrapColumns(visible(title), t.width, t.width) {
+	for _, l := range wrapColumns(shown(title), t.width, t.width) {
 		t.line(words{styleHead, l})
 	}
 }
@@ -87,7 +100,7 @@ func (t *terminal) heading(title string) {
 // lead stands alone.
 func (t *terminal) para(indent int, lead words, text words) {
 	pad := strings.Repeat(" ", indent)
-	lead.text, text.text = visible(lead.text), visible(text.text)
+	lead.text, text.text = shown(lead.text), shown(text.text)
 	hang := indent
 	first := pad
 	if lead.text != "" {
@@ -162,7 +175,7 @@ func wrapColumns(s string, first, rest int) []string {
 		end, wide := i+1, columns(tokens[i])
 		for firm := held; firm <= tight+1; firm++ {
 			end, wide = i+1, columns(tokens[i])
-			for end < len(tokens) && firm <= tight && bondBetween(tokens[end-1], tokens[end]) >= firm {
+			for end < len(tokens) && firm <= tight && bondOf(tokens, end) >= firm {
 				wide += 1 + columns(tokens[end])
 				end++
 			}
@@ -192,6 +205,15 @@ func wrapColumns(s string, first, rest int) []string {
 		turn()
 	}
 	return lines
+}
+
+// bondOf is how firmly a word holds to the one before it: as on paper, and both
+// ends of "3.27 to 122 mg/kg" together.
+func bondOf(tokens []string, i int) bond {
+	if tokens[i] == "to" && i+1 < len(tokens) && startsWithFigure(tokens[i-1]) && startsWithFigure(tokens[i+1]) {
+		return held
+	}
+	return bondBetween(tokens[i-1], tokens[i])
 }
 
 // table is rows of short cells under a head. Its cells are never broken: where
@@ -225,7 +247,7 @@ func (t *terminal) table(tb *table) {
 		for _, row := range tb.rows {
 			cell := ""
 			if i < len(row) {
-				cell = visible(row[i])
+				cell = shown(row[i])
 			}
 			used = used || cell != ""
 			c.cells = append(c.cells, cell)

@@ -134,7 +134,7 @@ func (t *terminal) otherBases(ws *dose.Worksheet) {
 			r     dose.DoseRange
 			mark  rune
 			bar   rune
-		}{{"as likely as not", d.Range50, '┃', '━'}, {"nine in ten", d.Range90, '│', '─'}} {
+		}{{"as likely as not", d.Range50, '|', '━'}, {"nine in ten", d.Range90, '|', '─'}} {
 			low, high := r.r.Low*f, r.r.High*f
 			lines = append(lines, line{label: "  " + r.label, dose: perKgPair(dose.Pair{low, high}, m.Unit), low: low, high: high, mark: r.mark, bar: r.bar})
 		}
@@ -234,7 +234,11 @@ func (t *terminal) howFarOff(ws *dose.Worksheet) {
 		return
 	}
 	t.heading("HOW FAR OFF THE DOSE MAY BE")
-	t.text(tableIndent, "Standard deviations of ln dose; nine in ten is the dose times and divided by exp(1.645 × sd), as likely as not by exp(0.674 × sd).")
+	s := "Standard deviations of ln dose"
+	if ws.Fit == nil { // a fitted line has Student's t in the place of these
+		s += "; nine in ten is the dose times and divided by exp(1.645 × sd), as likely as not by exp(0.674 × sd)"
+	}
+	t.text(tableIndent, s+".")
 	for i := range m.Parts {
 		p := &m.Parts[i]
 		sd := metabolic.Significant(p.SD, 3)
@@ -301,7 +305,7 @@ func (t *terminal) syringe(ws *dose.Worksheet) {
 }
 
 func (t *terminal) administration(lead string, p *dose.ProductRecord, a *dose.Administration, unit string) {
-	exact := metabolic.Significant(a.Exact, 4) + " " + a.Measure
+	exact := exactWords(a.Exact, a.Measure)
 	switch {
 	case a.Dilution != nil:
 		d := a.Dilution
@@ -309,8 +313,8 @@ func (t *terminal) administration(lead string, p *dose.ProductRecord, a *dose.Ad
 		of := "the product"
 		for i := range d.Steps {
 			x := &d.Steps[i]
-			t.para(tableIndent+2, words{text: fmt.Sprintf("%d.", i+1)}, words{text: fmt.Sprintf("Take %s of %s, add diluent %s: %s of %s/mL.",
-				measuredWords(x.TakeML, "mL"), of, measuredWords(x.AddML, "mL"), measuredWords(x.TotalML, "mL"), amountWords(x.AmountPerML, strings.TrimSuffix(unit, "/h")))})
+			t.para(tableIndent+2, words{text: fmt.Sprintf("%d.", i+1)}, words{text: fmt.Sprintf("Take %s of %s, add diluent %s: %s of %s.",
+				measuredWords(x.TakeML, "mL"), of, measuredWords(x.AddML, "mL"), measuredWords(x.TotalML, "mL"), perMLWords(x.AmountPerML, unit))})
 			of = "that"
 		}
 		t.para(tableIndent+2, words{text: fmt.Sprintf("%d.", len(d.Steps)+1)}, words{text: fmt.Sprintf("Draw %s (exactly %s mL): %s, %s.",
@@ -318,7 +322,7 @@ func (t *terminal) administration(lead string, p *dose.ProductRecord, a *dose.Ad
 	case a.BelowStep:
 		t.text(tableIndent, fmt.Sprintf("%s%s is exactly %s: under one step, and no usual dilution can be measured either.", lead, amountWords(a.AmountAsked, unit), exact))
 	default:
-		t.text(tableIndent, fmt.Sprintf("%s%s is exactly %s; %s holds %s, %s.", lead, amountWords(a.AmountAsked, unit), exact,
+		t.text(tableIndent, fmt.Sprintf("%s%s is exactly %s; given %s, that is %s, %s.", lead, amountWords(a.AmountAsked, unit), exact,
 			measuredWords(a.Measured, a.Measure), amountWords(a.AmountGiven, unit), errorWords(a.ErrorPercent)))
 	}
 	if len(a.Sites) > 1 {
@@ -343,13 +347,13 @@ func (t *terminal) administration(lead string, p *dose.ProductRecord, a *dose.Ad
 func (t *terminal) pump(lead string, p *dose.ProductRecord, a *dose.Pump, unit string) {
 	exact := metabolic.Significant(a.ExactMLPerH, 4) + " mL/h"
 	if a.BelowStep {
-		s := fmt.Sprintf("%sexactly %s, under one step of the pump.", lead, exact)
+		s := fmt.Sprintf("%sExactly %s, under one step of the pump.", lead, exact)
 		if a.DiluteTo > 0 {
-			s += fmt.Sprintf(" Dilute %s, to %s/mL.", dilutionWords(a.DilutePartIn), amountWords(a.DiluteTo, strings.TrimSuffix(unit, "/h")))
+			s += fmt.Sprintf(" Dilute %s, to %s.", dilutionWords(a.DilutePartIn), perMLWords(a.DiluteTo, unit))
 		}
 		t.text(tableIndent, s)
 	} else {
-		t.text(tableIndent, fmt.Sprintf("%sexactly %s; set %s, which is %s, %s.", lead, exact, measuredWords(a.MLPerH, "mL/h"), amountWords(a.AmountPerHour, unit), errorWords(a.ErrorPercent)))
+		t.text(tableIndent, fmt.Sprintf("%sExactly %s; set %s, that is %s, %s.", lead, exact, measuredWords(a.MLPerH, "mL/h"), amountWords(a.AmountPerHour, unit), errorWords(a.ErrorPercent)))
 	}
 	if p.Days > 0 && a.TotalML > 0 {
 		s := fmt.Sprintf("Over %s: %s of the product", countWord(p.Days, "day"), measuredWords(a.TotalML, "mL"))

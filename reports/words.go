@@ -124,18 +124,40 @@ func measuredWords(v float64, measure string) string {
 	return s + " " + measure + "s"
 }
 
-// strengthWords says the strength of a product: "50 mg/mL", of a tablet or
-// capsule "250 mg". Figures are kept as on the label.
-func strengthWords(p *dose.ProductRecord, unit string) string {
-	const figures = 7
-	name := "mg"
+// exactWords says what would have to be measured, before rounding.
+func exactWords(v float64, measure string) string {
+	s := metabolic.Significant(v, 4) + " " + measure
+	if measure != "mL" && v > 1 {
+		s += "s"
+	}
+	return s
+}
+
+// amountName is the unit of a strength, which keeps one unit however small it
+// is: 0.025 mg/mL stands below 5 mg/mL, and no factor of a thousand hides in a
+// change from mg to mcg.
+func amountName(unit string) string {
 	if amount, _ := unitOf(unit); amount == metabolic.InternationalUnit {
-		name = "units"
+		return "units"
 	}
+	return "mg"
+}
+
+// strengthFigures are as many as a label has, and more.
+const strengthFigures = 7
+
+// perMLWords says a strength: "50 mg/mL".
+func perMLWords(v float64, unit string) string {
+	return metabolic.Significant(v, strengthFigures) + " " + amountName(unit) + "/mL"
+}
+
+// strengthWords says the strength of a product: "50 mg/mL", of a tablet or
+// capsule "250 mg".
+func strengthWords(p *dose.ProductRecord, unit string) string {
 	if p.AmountPerPiece > 0 {
-		return metabolic.Significant(p.AmountPerPiece, figures) + " " + name
+		return metabolic.Significant(p.AmountPerPiece, strengthFigures) + " " + amountName(unit)
 	}
-	return metabolic.Significant(p.AmountPerML, figures) + " " + name + "/mL"
+	return perMLWords(p.AmountPerML, unit)
 }
 
 // errorWords says how far a rounded dose is from the one asked for: "0.378 %
@@ -510,7 +532,7 @@ var (
 	typedIU       = regexp.MustCompile(`\b(IU|iu|U|u)\b`)
 	wordIU        = regexp.MustCompile(`\bIU\b`)
 	typedMicro    = regexp.MustCompile(`[µμ]g|\bug\b`)
-	typedUnspaced = regexp.MustCompile(`([0-9])([a-zA-Z])`)
+	typedUnspaced = regexp.MustCompile(`([0-9])([a-zA-Zµμ])`)
 	typedPerKg    = regexp.MustCompile(`(?i)/\s*kg\s*(/\s*h)?\s*$`)
 )
 

@@ -1,0 +1,255 @@
+package reports
+
+import (
+	"bytes"
+	"encoding/json"
+	"flag"
+	"io"
+	"math"
+	"os"
+	"path/filepath"
+	"regexp"
+	"strings"
+	"testing"
+
+	"tayra/dose"
+)
+
+var update = flag.Bool("update", false, "write the golden files anew")
+
+const goldenDir = "../testdata/golden"
+
+// example is one case file with its worksheet.
+type example struct {
+	name string
+	data []byte
+	ws   *dose.Worksheet
+}
+
+// examples are the cases of testdata, and those beside the golden files, which
+// reach the corners that the others leave out.
+func examples(t testing.TB) []example {
+	t.Helper()
+	var files []string
+	for _, pattern := range []string{"../testdata/*.yaml", goldenDir + "/*.yaml"} {
+		found, err := filepath.Glob(pattern)
+		if err != nil || len(found) == 0 {
+			t.Fatalf("%s: %d files, %v", pattern, len(found), err)
+		}
+		files = append(files, found...)
+	}
+	var out []example
+	seen := map[string]string{}
+	for _, f := range files {
+		data, err := os.ReadFile(f)
+		if err != nil {
+			t.Fatal(err)
+		}
+		e := example{name: strings.TrimSuffix(filepath.Base(f), ".yaml"), data: data}
+		if other, twice := seen[e.name]; twice {
+			t.Fatalf("%s and %s would have one golden file", other, f)
+		}
+		seen[e.name] = f
+		e.ws = worksheetOf(t, f, data)
+		out = append(out, e)
+	}
+	return out
+}
+
+func worksheetOf(t testing.TB, file string, data []byte) *dose.Worksheet {
+	t.Helper()
+	in, _, err := dose.ReadCase(file, data)
+	if err != nil {
+		t.Fatal(err)
+	}
+	c, err := in.Check()
+	if err != nil {
+		t.Fatal(err)
+	}
+	ws, err := dose.Draft(c)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return ws
+}
+
+func exampleNamed(t testing.TB, name string) *dose.Worksheet {
+	t.Helper()
+	for _, e := range examples(t) {
+		if e.name == name {
+			return e.ws
+		}
+	}
+	t.Fatalf("no example %s", name)
+	return nil
+}
+
+// stamp is what the foot says of the program: the digests change with every
+// table, and would hide in each golden file which of them changed in substance.
+var stamp = regexp.MustCompile(`tables [0-9a-f]+, record [0-9a-f]{16}`)
+
+func unstamped(text []byte) []byte {
+	return stamp.ReplaceAll(text, []byte("tables ................, record ................"))
+}
+
+// TestTextGolden holds the whole text of every example, steps included. A
+// change that is meant is written by go test ./reports -update and read before
+// it is committed.
+func TestTextGolden(t *testing.T) {
+	for _, e := range examples(t) {
+		t.Run(e.name, func(t *testing.T) {
+			golden(t, e.name+".txt", unstamped(Text(e.ws, TextOptions{Steps: true})), bytes.Equal)
+		})
+	}
+	stop := exampleNamed(t, "stop")
+	t.Run("quiet", func(t *testing.T) {
+		golden(t, "stop.quiet.txt", unstamped(Text(stop, TextOptions{Quiet: true, Width: 60})), bytes.Equal)
+	})
+	t.Run("colour", func(t *testing.T) {
+		golden(t, "stop.colour.txt", unstamped(Text(stop, TextOptions{Quiet: true, Colour: true})), bytes.Equal)
+	})
+}
+
+// TestJSONGolden holds two records: a draft and a stop. Keys, their order and
+// all texts must agree exactly, numbers to 1e-12, since a processor that joins
+// a product and a sum in one step rounds the last digit otherwise.
+func TestJSONGolden(t *testing.T) {
+	for _, name := range []string{"anteater", "stop"} {
+		t.Run(name, func(t *testing.T) {
+			record, err := JSON(exampleNamed(t, name))
+			if err != nil {
+				t.Fatal(err)
+			}
+			record = regexp.MustCompile(`"tables": "[0-9a-f]+"`).ReplaceAll(record, []byte(`"tables": "................"`))
+			golden(t, name+".json", record, sameJSON)
+		})
+	}
+}
+
+func golden(t *testing.T, name string, got []byte, same func(a, b []byte) bool) {
+	t.Helper()
+	file := filepath.Join(goldenDir, name)
+	if *update {
+		if err := os.WriteFile(file, got, 0o644); err != nil {
+			t.Fatal(err)
+		}
+		return
+	}
+	want, err := os.ReadFile(file)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !same(got, want) {
+		t.Errorf("%s: %s\nIf it is meant: go test ./reports -update", name, firstDifference(got, want))
+	}
+}
+
+func firstDifference(got, want []byte) string {
+	g, w := strings.Split(string(got), "\n"), strings.Split(string(want), "\n")
+	for i := range g {
+		if i >= len(w) || g[i] != w[i] {
+			other := "(the end)"
+			if i < len(w) {
+				other = w[i]
+			}
+			return "line " + itoa(i+1) + "\n got: " + g[i] + "\nwant: " + other
+		}
+	}
+	return "ends after line " + itoa(len(g))
+}
+
+func itoa(n int) string { b, _ := json.Marshal(n); return string(b) }
+
+// sameJSON compares token by token, so that the order of keys counts.
+func sameJSON(a, b []byte) bool {
+	x, y := json.NewDecoder(bytes.NewReader(a)), json.NewDecoder(bytes.NewReader(b))
+	for {
+		s, err := x.Token()
+		u, err2 := y.Token()
+		if err == io.EOF || err2 == io.EOF {
+			return err == err2
+		}
+		if err != nil || err2 != nil {
+			return false
+		}
+		f, isF := s.(float64)
+		g, isG := u.(float64)
+		if isF && isG {
+			if math.Abs(f-g) > 1e-12*math.Max(math.Abs(f), math.Abs(g)) {
+				return false
+			}
+			continue
+		}
+		if s != u {
+			return false
+		}
+	}
+}
+
+func TestSameJSONSeesDifferences(t *testing.T) {
+	a := `{"x": [1, 2.5, "mg"], "y": null}`
+	if !sameJSON([]byte(a), []byte(`{"x":[1.0000000000000002,2.5,"mg"],"y":null}`)) {
+		t.Error("spaces and the last digit make a difference")
+	}
+	for _, b := range []string{`{"y": null, "x": [1, 2.5, "mg"]}`, `{"x": [1, 2.5001, "mg"], "y": null}`, `{"x": [1, 2.5, "g"], "y": null}`, `{"x": [1, 2.5, "mg"]}`} {
+		if sameJSON([]byte(a), []byte(b)) {
+			t.Errorf("%s passes for %s", b, a)
+		}
+	}
+}
+
+// penSlips are the slips of a pen that medication-safety bodies publish lists of
+// (abbreviations and dose designations that are not to be used), and those of
+// a program.
+var penSlips = []struct{ what, pattern string }{
+	{"no zero before the point", `(^|[^0-9.,])\.[0-9]+ ?(mg|mcg|g|kg|mL|L|units?|h|hours?|days?|%)\b`},
+	{"a zero after the last digit", `[0-9]\.[0-9]*0 ?(mg|mcg|g|kg|mL|L|units?|h|hours?|days?|W|kcal|°C|%)`},
+	{"a micro sign", `[µμ]g|\bug/?\b`},
+	{"U or IU for units", `[0-9] ?(U|u|IU|iu)\b|\bIU\b`},
+	{"no space between number and unit", `(^|[^q0-9a-zA-Z_.,])[0-9][0-9.,]*(mg|mcg|kg|mL|units|hours?|days?|h|°C|kcal)\b`},
+	{"no comma in thousands", `(^|[^0-9.,/:])[0-9]{5,} ?(mg|mcg|g|kg|mL|units)\b`},
+	{"a dash between doses", `[0-9] ?[-–—] ?[0-9.,]+ ?(mg|mcg|g|kg|mL|units|h|hours|days)\b`},
+	{"an exponent", `[0-9]e[-+]?[0-9]+ `},
+	{"no number", `\b(NaN|Inf|inf)\b|[+-]Inf`},
+	{"a verb that found no value", `%!|\(MISSING|<nil>|nil\)`},
+	{"shorthand of an interval", `\b(BID|TID|SID|QID|QD|QOD|EOD|b\.i\.d|s\.i\.d)\b`},
+	{"naked q-hours", `[^(]q[0-9.]+h`},
+	{"two stops", `[^.]\.\.( |$)|:\.|,\.|; ?\.`},
+	{"an empty bracket", `\(\)|\[\]`},
+}
+
+// TestNoSlips reads every text that the examples can become.
+func TestNoSlips(t *testing.T) {
+	for _, s := range penSlips {
+		re := regexp.MustCompile(s.pattern)
+		for _, e := range examples(t) {
+			for _, o := range []TextOptions{{Steps: true}, {Width: 60, Quiet: true}, {Width: 200, Steps: true}} {
+				for _, line := range strings.Split(string(Text(e.ws, o)), "\n") {
+					if re.MatchString(line) {
+						t.Errorf("%s: %s: %s", e.name, s.what, line)
+					}
+				}
+			}
+		}
+	}
+}
+
+// The scan is worth what it finds: each pattern is shown a slip, and what is
+// right and looks like one.
+func TestSlipsAreFound(t *testing.T) {
+	wrong := []string{"give .5 mg", "give 5.0 mg", "85 µg", "1000 IU", "give 5mg now", "10000 units", "5-10 mg/kg", "1.2e+06 units", "NaN mg", "%!s(int=3)", "5 mg BID", "5 mg q12h", "the end..", "SC ()"}
+	for i, s := range penSlips {
+		if !regexp.MustCompile(s.pattern).MatchString(wrong[i]) {
+			t.Errorf("%s: not found in %q", s.what, wrong[i])
+		}
+	}
+	right := []string{"give 0.5 mg every 12 hours (q12h)", "10 mg/kg", "1,000 units/kg", "85 mcg", "Physiol Rev 27:511-541 (memory)", "0.75·h/1.645 each", "5 to 10 mg/kg",
+		"W^0.75 kcal/day", "case LW-0412  2026-11-30", "53:167-191", "10.1 mL", "within 2-fold", "nine-in-ten", "of 361, 164 fell"}
+	for _, text := range right {
+		for _, s := range penSlips {
+			if regexp.MustCompile(s.pattern).MatchString(text) {
+				t.Errorf("%s: found in %q", s.what, text)
+			}
+		}
+	}
+}

@@ -2,6 +2,7 @@ package dose
 
 import (
 	"fmt"
+	"math"
 	"strings"
 
 	"tayra/metabolic"
@@ -23,7 +24,7 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 	}
 	kg := func(name string, v float64) string {
 		out.Numbers[name+"_kg"] = v
-		return metabolic.FormatMass(metabolic.Mass(v))
+		return metabolic.FormatMass(roundedMass(v))
 	}
 	perKg := func(name string, v float64) string {
 		out.Numbers[name] = v
@@ -41,7 +42,7 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 		*t = "The drug's margin is narrow: an error of the size in the published record can harm. Measure concentrations, or choose another drug."
 		out.Source = "Houben, veterinary review, Ghent (read: summary)"
 	case CrossClass:
-		*t = fmt.Sprintf("Patient (%s) and model (%s) are of two classes. Of 30 avian clearances predicted from mammals, 7 fell within 2-fold and 13 within 3-fold of the observed value.", strings.ToLower(c.Patient.Animal.Class), strings.ToLower(c.Models[r.model].Animal.Class))
+		*t = fmt.Sprintf("Patient (%s) and model (%s) are of different classes. Of 30 avian clearances predicted from mammals, 7 fell within 2-fold and 13 within 3-fold of the observed value.", classWords(c.Patient.Animal), classWords(c.Models[r.model].Animal))
 		if r.level == Warn {
 			*t += " The case calls the margin wide."
 		}
@@ -59,7 +60,11 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 		*t = "A depot or long-acting form: its absorption, not the animal's clearance, sets the interval. No interval is scaled."
 	case AboveTolerated:
 		tol := c.Models[r.model].Tolerated
-		*t = fmt.Sprintf("The drafted dose, %s, is above the highest that the case cites as tolerated by the model, %s (%s).", perKg("drafted_per_kg", r.a), perKg("tolerated_per_kg", r.b), tol.Source)
+		if n.stopped { // the number that a stop holds back is not told by the stop
+			*t = fmt.Sprintf("The dose per kg is above the highest that the case cites as tolerated by the model, %s (%s).", perKg("tolerated_per_kg", r.b), tol.Source)
+		} else {
+			*t = fmt.Sprintf("The drafted dose, %s, is above the highest that the case cites as tolerated by the model, %s (%s).", perKg("drafted_per_kg", r.a), perKg("tolerated_per_kg", r.b), tol.Source)
+		}
 	case Peak:
 		*t = fmt.Sprintf("One administration is %s times the model's dose per kg: effects that follow the peak grow with it.", num("peak_ratio", r.a))
 		out.Numbers["threshold"] = r.b
@@ -70,9 +75,13 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 		}
 		out.Source = "Sharma & McNeill 2009 Br J Pharmacol (read: abstract); classes from memory"
 	case BelowStep:
-		*t = fmt.Sprintf("The volume, %s mL, is under one step of the device (%s mL): it cannot be measured. Dilute as proposed below, or take a finer device.", num("volume_ml", r.a), num("step_ml", r.b))
-		if c.Product != nil && c.Product.Input.Strength.Tablet() {
-			*t = fmt.Sprintf("The dose is %s of a tablet, under the smallest part that can be given (%s). Take another form.", num("pieces", r.a), num("step_pieces", r.b))
+		switch {
+		case c.Product.Input.Strength.Tablet():
+			*t = fmt.Sprintf("The dose is less than the smallest part of a tablet that can be given (%s). Take another form.", num("step_pieces", r.b))
+		case c.Models[n.from].Regimen.Interval.Kind == metabolic.Infusion:
+			*t = fmt.Sprintf("The rate is under one step of the pump (%s mL/h): it cannot be set. Dilute as proposed below, or take a finer pump.", num("step_ml_per_h", r.b))
+		default:
+			*t = fmt.Sprintf("The volume is under one step of the device (%s mL): it cannot be measured. Dilute as proposed below, or take a finer device.", num("step_ml", r.b))
 		}
 	case MassRatio:
 		*t = fmt.Sprintf("Patient and model differ in mass by a factor of %s: each percent of error in the exponent counts more.", num("mass_ratio", above1(r.a)))
@@ -285,6 +294,25 @@ func massSource(c *Case, model int) string {
 		return "adult mass range: " + s
 	}
 	return "adult mass range: " + a.AdultBasis
+}
+
+// roundedMass is a mass to 4 figures: the middle of an estimate carries no more.
+func roundedMass(kg float64) metabolic.Mass {
+	e := math.Pow(10, 3-math.Floor(math.Log10(kg)))
+	return metabolic.Mass(math.Round(kg*e) / e)
+}
+
+// classWords calls an animal by its class.
+func classWords(a *species.Animal) string {
+	switch {
+	case a.Mammal():
+		return "a mammal"
+	case a.Bird():
+		return "a bird"
+	case a.Reptile():
+		return "a reptile"
+	}
+	return "an amphibian"
 }
 
 func eliminationName(e Elimination) string {

@@ -48,6 +48,7 @@ func Draft(c *Case) (*Worksheet, error) {
 	w.Suitability = suitability(c, n.from)
 	if !n.stopped {
 		w.Drafted = n.drafted(c, w.Cautions)
+		w.Drafted.Disagreement = n.disagreement(c, w.Bases)
 		w.Loading = n.loading(c)
 		w.Exponents = n.exponents(c)
 		w.Temperature = n.temperatureTable(c)
@@ -403,6 +404,37 @@ func (n *numbers) drafted(c *Case, cautions []Caution) *Drafted {
 	}
 	d.Meaning = n.meaning(c, i)
 	return d
+}
+
+// disagreement names the doses by the other bases where they lie so far apart
+// that the first page must say it beside the number.
+func (n *numbers) disagreement(c *Case, bases []BasisLine) string {
+	raised := false
+	for i := range n.raised {
+		r := &n.raised[i]
+		raised = raised || r.slug == BasisDisagrees && r.level == Warn && r.model == n.from
+	}
+	if !raised {
+		return ""
+	}
+	u := &c.Models[n.from].Regimen
+	var others []string
+	used := ""
+	for _, b := range bases {
+		d := metabolic.FormatRange(b.DosePerKg[0], b.DosePerKg[1], func(x float64) string {
+			return metabolic.FormatDosePerKg(x, u.Unit, u.Interval.Kind == metabolic.Infusion)
+		})
+		if b.Drafted {
+			used = d + " by " + b.Basis
+		} else {
+			others = append(others, d+" by "+b.Basis)
+		}
+	}
+	at := ""
+	if u.Interval.Kind == metabolic.Repeated {
+		at = " at the model's interval"
+	}
+	return fmt.Sprintf("The bases disagree: the dose%s is %s, but %s.", at, used, strings.Join(others, ", "))
 }
 
 func (n *numbers) planReason(c *Case, i int) string {

@@ -203,7 +203,8 @@ type Drafted struct {
 	Range50           DoseRange `json:"range50"`
 	Range90Amount     DoseRange `json:"range90_amount"` // mg or IU per administration
 	Range50Amount     DoseRange `json:"range50_amount"`
-	Meaning           string    `json:"meaning"` // what the ranges say and do not say
+	Meaning           string    `json:"meaning"`                  // what the ranges say and do not say
+	Disagreement      string    `json:"bases_disagree,omitempty"` // the dose by the other bases, where they disagree 2-fold
 	WorstCaution      string    `json:"worst_caution"`
 }
 

@@ -48,25 +48,37 @@ type Prediction struct {
 //
 //	nlme::lme(log(rate) ~ log(mass), random = ~1|order/family/genus, method = "REML")
 func Relatives(a *Animal, m metabolic.Mass, t metabolic.Celsius) (*Prediction, error) {
-	unavailable := func(format string, args ...any) (*Prediction, error) {
-		return nil, &UnavailableError{Basis: "relatives", Why: fmt.Sprintf(format, args...)}
+	return RelativesOf(a).At(m, t)
+}
+
+// RelativesLine is what measured relatives say of one animal, read once and
+// then asked at many masses and temperatures. It may be shared and is not
+// changed by use.
+type RelativesLine struct {
+	fit        *metabolic.NestedFit
+	animal     *Animal
+	prediction Prediction // all of it that does not depend on mass and temperature
+	missing    string     // why there is none
+}
+
+// RelativesOf reads the line of an animal. An animal without one, for the
+// reasons that [Relatives] gives, has a line that says so when it is asked.
+func RelativesOf(a *Animal) *RelativesLine {
+	r := &RelativesLine{animal: a}
+	if !r.read() {
+		r.missing = "too few measured species of the class " + or(a.Class, "of this animal")
 	}
-	if !(m > 0) || math.IsInf(float64(m), 1) {
-		return unavailable("a mass of %v kg has no rate", float64(m))
-	}
+	return r
+}
+
+func (r *RelativesLine) read() bool {
+	a := r.animal
 	class, ok := line(relativesIndex, a.Class)
 	if !ok || !plain(a.Class) {
-		return unavailable("too few measured species of the class %s", or(a.Class, "of this animal"))
+		return false
 	}
 	fit, low, high := parseFit(class)
-	covariates := []float64{math.Log(float64(m))}
-	if !a.Endotherm() {
-		if err := metabolic.CheckEctotherm(t); err != nil {
-			return unavailable("%v", err)
-		}
-		covariates = append(covariates, float64(t))
-	}
-	p := &Prediction{N: fit.N, ClassN: fit.N, MassLow: low, MassHigh: high}
+	p := Prediction{N: fit.N, ClassN: fit.N, MassLow: low, MassHigh: high}
 	// The nodes from the order down: the fit's own order of them.
 	path := a.Class
 	ranks, names := [3]string{"order", "family", "genus"}, [3]string{a.Order, a.Family, a.Genus()}
@@ -90,15 +102,41 @@ func Relatives(a *Animal, m metabolic.Mass, t metabolic.Celsius) (*Prediction, e
 		p.Levels = append([]string{ranks[i] + " " + name}, p.Levels...)
 		p.N = node.N
 	}
-	predicted, err := fit.Predict(a.Order, a.Family, a.Genus(), covariates)
-	if err != nil {
-		return unavailable("%v", err)
-	}
-	p.Rate, p.SDln = metabolic.Power(math.Exp(predicted.Mean)), predicted.SD
 	if own, ok := MeasuredRate(a); ok && own.Flag == "" {
 		p.Own = true
 	}
-	return p, nil
+	r.fit, r.prediction = fit, p
+	return true
+}
+
+// At is the line at a mass and, for an ectotherm, a body temperature; its
+// errors are those of [Relatives].
+func (r *RelativesLine) At(m metabolic.Mass, t metabolic.Celsius) (*Prediction, error) {
+	unavailable := func(format string, args ...any) (*Prediction, error) {
+		return nil, &UnavailableError{Basis: "relatives", Why: fmt.Sprintf(format, args...)}
+	}
+	if !(m > 0) || math.IsInf(float64(m), 1) {
+		return unavailable("a mass of %v kg has no rate", float64(m))
+	}
+	if r.missing != "" {
+		return nil, &UnavailableError{Basis: "relatives", Why: r.missing}
+	}
+	a := r.animal
+	room := [2]float64{math.Log(float64(m)), float64(t)}
+	covariates := room[:1]
+	if !a.Endotherm() {
+		if err := metabolic.CheckEctotherm(t); err != nil {
+			return unavailable("%v", err)
+		}
+		covariates = room[:2]
+	}
+	predicted, err := r.fit.Predict(a.Order, a.Family, a.Genus(), covariates)
+	if err != nil {
+		return unavailable("%v", err)
+	}
+	p := r.prediction
+	p.Rate, p.SDln = metabolic.Power(math.Exp(predicted.Mean)), predicted.SD
+	return &p, nil
 }
 
 // plain reports whether a rank's name cannot be mistaken for a path of names.

@@ -2,6 +2,7 @@ package main
 
 import (
 	"github.com/spf13/cobra"
+	"github.com/spf13/pflag"
 
 	"tayra/dose"
 )
@@ -17,7 +18,7 @@ curves. The exit status is 1 when the two differ, when the proposed dose lies
 outside the nine-in-ten range or raises a stop, and when the draft itself is
 stopped. Agreement with the draft is no evidence of safety.`,
 		Example: `tayra check check.yaml
-tayra check check.yaml --json check.json`,
+tayra check check.yaml --plot curves.svg --json check.json`,
 		Annotations:       map[string]string{"usage": "tayra check CASE.yaml [flags]"},
 		Args:              arguments("CASE.yaml"),
 		ValidArgsFunction: completeCase,
@@ -34,7 +35,7 @@ tayra check check.yaml --json check.json`,
 					Problem: "missing: nothing to check", Remedy: "write the dose and the interval that are proposed, or run `tayra draft`"}}
 			}
 			c := &readCaseFile{name: in.File, source: source, text: text, in: in}
-			ws, err := c.draft(newCaseByFlags())
+			ws, err := c.draft()
 			if err != nil {
 				return err
 			}
@@ -47,6 +48,8 @@ tayra check check.yaml --json check.json`,
 			return nil
 		},
 	}
-	out.define(cmd, nil)
+	out.define(cmd, func(flags *pflag.FlagSet) {
+		flags.Var(&onceFlag{text: &out.plot, name: "FILE"}, "plot", "draw the curves; the name ends in .svg, .png or .pdf")
+	})
 	return cmd
 }

@@ -1,8 +1,10 @@
 package main
 
 import (
+	"errors"
 	"fmt"
 	"strconv"
+	"strings"
 
 	"github.com/spf13/cobra"
 	"github.com/spf13/pflag"
@@ -13,7 +15,6 @@ import (
 
 func draftCommand() *cobra.Command {
 	var out worksheetFlags
-	var saveCase string
 	typed := newCaseByFlags()
 	cmd := &cobra.Command{
 		Use:   "draft CASE.yaml",
@@ -24,7 +25,7 @@ and print the worksheet with every step. The case is in a file, which
 When a stop leaves no dose, the worksheet says so, is written all the same, and
 the exit status is 1.`,
 		Example: `tayra draft case.yaml
-tayra draft case.yaml --json record.json
+tayra draft case.yaml --pdf worksheet.pdf --json record.json
 tayra draft --date 2026-11-30 --species "giant anteater" --mass "41 kg" \
   --drug examplicillin --model-species dog --model-mass "18 kg" \
   --dose "10 mg/kg" --interval q12h --route SC \
@@ -41,7 +42,7 @@ tayra draft --date 2026-11-30 --species "giant anteater" --mass "41 kg" \
 			var err error
 			if len(args) == 1 {
 				c, err = caseFromFile(cmd, args[0], typed, given)
-				if err == nil && saveCase != "" {
+				if err == nil && out.saveCase != "" {
 					err = &usageError{"--save-case", "the case is in " + c.name + " already", "leave the flag out"}
 				}
 			} else {
@@ -50,15 +51,11 @@ tayra draft --date 2026-11-30 --species "giant anteater" --mass "41 kg" \
 			if err != nil {
 				return err
 			}
-			ws, err := c.draft(typed)
+			ws, err := c.draft()
 			if err != nil {
 				return err
 			}
-			var more []output
-			if saveCase != "" {
-				more = append(more, output{flag: "--save-case", path: saveCase, data: c.text})
-			}
-			if err := out.write(cmd, ws, c, true, more...); err != nil {
+			if err := out.write(cmd, ws, c, true); err != nil {
 				return err
 			}
 			if ws.Drafted == nil {
@@ -69,7 +66,7 @@ tayra draft --date 2026-11-30 --species "giant anteater" --mass "41 kg" \
 	}
 	typed.define(cmd)
 	out.define(cmd, func(flags *pflag.FlagSet) {
-		flags.Var(&onceFlag{text: &saveCase, name: "FILE"}, "save-case", "write the case that the flags make as a case file")
+		flags.Var(&onceFlag{text: &out.saveCase, name: "FILE"}, "save-case", "write the case that the flags make as a case file")
 	})
 	return cmd
 }
@@ -80,6 +77,7 @@ type readCaseFile struct {
 	source string // path; "" when there is no file
 	text   []byte // the case as a file
 	in     *dose.CaseInput
+	flagOf func(field string) string // the flag under which an entry was typed, or ""
 }
 
 // caseFromFlags takes the case from the command line.
@@ -87,7 +85,7 @@ func caseFromFlags(typed *caseByFlags, given []string) (*readCaseFile, error) {
 	if len(given) == 0 {
 		return nil, &usageError{"CASE.yaml", "missing", "name a case file, which `tayra new FILE.yaml` writes to start from, or give the case by flags: see `tayra draft --help`"}
 	}
-	return &readCaseFile{in: typed.in, text: dose.WriteCase(typed.in)}, nil
+	return &readCaseFile{in: typed.in, text: dose.WriteCase(typed.in), flagOf: typed.flagOf}, nil
 }
 
 // caseFromFile reads a case file. Of the flags that make a case only the date
@@ -103,48 +101,51 @@ func caseFromFile(cmd *cobra.Command, arg string, typed *caseByFlags, given []st
 	if err != nil {
 		return nil, err
 	}
+	c := &readCaseFile{name: in.File, source: source, text: text, in: in}
 	if len(given) > 0 {
 		if in.Date.Given() {
 			return nil, &usageError{"--date", fmt.Sprintf("the case has a date already, %s, in line %d of %s", strconv.Quote(in.Date.Text), in.Date.Line, in.File), "leave the flag out, or change the file"}
 		}
 		in.Date = typed.in.Date
-		text = dose.WriteCase(in) // so that the worksheet carries a whole case
-	}
-	return &readCaseFile{name: in.File, source: source, text: text, in: in}, nil
-}
-
-// draft works the case out. Faults of what was typed as flags name the flags.
-func (c *readCaseFile) draft(typed *caseByFlags) (*dose.Worksheet, error) {
-	flagOf := typed.flagOf
-	if c.name != "" {
-		flagOf = func(field string) string {
-			if field == dateField && c.in.Date.Given() {
-				return "--date" // its entry has no line: it was typed as a flag
+		c.text = dose.WriteCase(in) // so that the worksheet carries a whole case
+		c.flagOf = func(field string) string {
+			if field == dateField {
+				return "--date"
 			}
 			return ""
 		}
 	}
+	return c, nil
+}
+
+// draft works the case out. Faults of what was typed as flags name the flags.
+func (c *readCaseFile) draft() (*dose.Worksheet, error) {
 	checked, err := c.in.Check()
 	if err != nil {
-		return nil, flagErrors(err, flagOf)
+		return nil, flagErrors(err, c.flagOf)
 	}
 	ws, err := dose.Draft(checked)
 	if err != nil {
-		return nil, flagErrors(err, flagOf)
+		return nil, flagErrors(err, c.flagOf)
 	}
 	return ws, nil
 }
 
 // worksheetFlags say where a worksheet goes.
 type worksheetFlags struct {
-	json  string
-	quiet bool
-	force bool
-	width int
+	pdf, paper string
+	json       string
+	saveCase   string // of draft
+	plot       string // of check
+	quiet      bool
+	force      bool
+	width      int
 }
 
 func (w *worksheetFlags) define(cmd *cobra.Command, more func(*pflag.FlagSet)) {
 	inGroup(cmd, "Output", func(flags *pflag.FlagSet) {
+		flags.Var(&onceFlag{text: &w.pdf, name: "FILE"}, "pdf", "write the worksheet as PDF; - is standard output and replaces the text")
+		flags.Var(&onceFlag{text: &w.paper, name: "SIZE"}, "paper", "of the PDF: a4 or letter; a4 unless given")
 		defineJSON(flags, &w.json)
 		if more != nil {
 			more(flags)
@@ -153,11 +154,28 @@ func (w *worksheetFlags) define(cmd *cobra.Command, more func(*pflag.FlagSet)) {
 		flags.IntVar(&w.width, "width", 0, "`COLUMNS` of the text, from 60 to 200; the terminal's, up to 100, unless given")
 		defineForce(flags, &w.force)
 	})
+	completeWords(cmd, "paper", "a4", "letter")
 }
 
 // check refuses flags that contradict each other, before anything is read.
 func (w *worksheetFlags) check(cmd *cobra.Command) error {
+	if w.plot != "" {
+		if _, err := reports.FigureFormat(w.plot); err != nil {
+			return plotFault(err)
+		}
+	}
+	_, paperErr := reports.ParsePaper(w.paper)
 	switch {
+	case w.paper != "" && paperErr != nil:
+		return &usageError{"--paper", strconv.Quote(w.paper) + " is no size known here", "write a4 or letter"}
+	case w.paper != "" && w.pdf == "":
+		return &usageError{"--paper", "without --pdf it changes nothing", "add --pdf FILE, or leave it out"}
+	case w.pdf == "-" && w.json == "-":
+		return &usageError{"--json", "standard output takes the PDF already", "give one of the two a file"}
+	case w.saveCase == "-":
+		return &usageError{"--save-case", "standard output takes the worksheet", "name a file"}
+	case w.pdf == "-" && isTerminal(cmd.OutOrStdout()):
+		return &usageError{"--pdf", "standard output is a terminal, and a PDF is no text", "name a file, or send it to another program"}
 	case cmd.Flags().Changed("width") && (w.width < 60 || w.width > 200):
 		return &usageError{"--width", strconv.Itoa(w.width) + " is outside 60 to 200", "write a number of columns, such as 80"}
 	}
@@ -166,7 +184,8 @@ func (w *worksheetFlags) check(cmd *cobra.Command) error {
 
 // write renders everything in memory, puts the files in place, all or none, and
 // then prints.
-func (w *worksheetFlags) write(cmd *cobra.Command, ws *dose.Worksheet, c *readCaseFile, steps bool, files ...output) error {
+func (w *worksheetFlags) write(cmd *cobra.Command, ws *dose.Worksheet, c *readCaseFile, steps bool) error {
+	var files []output
 	var printed []byte
 	take := func(flag, path string, data []byte) {
 		switch path {
@@ -177,6 +196,18 @@ func (w *worksheetFlags) write(cmd *cobra.Command, ws *dose.Worksheet, c *readCa
 			files = append(files, output{flag: flag, path: path, data: data})
 		}
 	}
+	if w.pdf != "" {
+		paper := reports.A4
+		if w.paper != "" {
+			paper, _ = reports.ParsePaper(w.paper) // check has read it already
+		}
+		data, err := reports.PDF(ws, reports.PDFOptions{Paper: paper, Case: c.text})
+		if err != nil {
+			return letterFault(err, c)
+		}
+		take("--pdf", w.pdf, data)
+	}
+	take("--save-case", w.saveCase, c.text)
 	if w.json != "" {
 		data, err := reports.JSON(ws)
 		if err != nil {
@@ -184,7 +215,16 @@ func (w *worksheetFlags) write(cmd *cobra.Command, ws *dose.Worksheet, c *readCa
 		}
 		take("--json", w.json, data)
 	}
-	if w.json != "-" {
+	if w.plot != "" {
+		data, err := w.drawCurves(cmd, ws)
+		if err != nil {
+			return err
+		}
+		if data != nil {
+			take("--plot", w.plot, data)
+		}
+	}
+	if w.pdf != "-" && w.json != "-" {
 		printed = reports.Text(ws, w.textOptions(cmd, steps))
 	}
 	var sources []string
@@ -195,6 +235,48 @@ func (w *worksheetFlags) write(cmd *cobra.Command, ws *dose.Worksheet, c *readCa
 		return err
 	}
 	return toStandardOutput(cmd, printed)
+}
+
+// drawCurves draws the concentrations. A stopped draft has none, which its
+// worksheet says; a case without a half-life cannot have any, which is a fault
+// of the command line.
+func (w *worksheetFlags) drawCurves(cmd *cobra.Command, ws *dose.Worksheet) ([]byte, error) {
+	if ws.Drafted == nil {
+		warn(cmd.ErrOrStderr(), "--plot", "nothing is drawn: a stop leaves no dose")
+		return nil, nil
+	}
+	format, err := reports.FigureFormat(w.plot)
+	if err != nil {
+		return nil, plotFault(err)
+	}
+	if len(ws.Curves) == 0 {
+		return nil, &usageError{"--plot", "no concentration to draw", "write the model's half_life in the case, or leave the flag out"}
+	}
+	data, err := reports.CurvesFigure(ws, format)
+	if err != nil {
+		return nil, &usageError{"--plot", err.Error(), ""}
+	}
+	return data, nil
+}
+
+func plotFault(err error) error {
+	problem, remedy, _ := strings.Cut(err.Error(), "; ")
+	return &usageError{"--plot", problem, remedy}
+}
+
+// letterFault names the flag of a text that cannot be printed, when it was
+// typed as one; a case file's place stands in the error already.
+func letterFault(err error, c *readCaseFile) error {
+	var letter *reports.LetterError
+	if c.flagOf == nil || !errors.As(err, &letter) || letter.Line > 0 {
+		return err
+	}
+	if flag := c.flagOf(letter.Field); flag != "" {
+		named := *letter
+		named.File, named.Field = "", flag
+		return &named
+	}
+	return err
 }
 
 func (w *worksheetFlags) textOptions(cmd *cobra.Command, steps bool) reports.TextOptions {

@@ -128,11 +128,17 @@ func reason(err error) (problem, remedy string) {
 	return err.Error(), ""
 }
 
-// flagError renames the places of an input that was typed as flags: field
+// keysAsFlags turns the keys of the case file in a remedy into the flags that
+// stand for them.
+var keysAsFlags = strings.NewReplacer("basis: equation", "--basis equation", "interval: infusion", "--interval infusion",
+	"interval: once", "--interval once", "write half_life", "write --half-life")
+
+// flagErrors renames the places of an input that was typed as flags: field
 // names of the case file become flags, and there is no file to point into.
+// flagOf may be nil.
 func flagErrors(err error, flagOf func(field string) string) error {
 	var faults dose.InputErrors
-	if !errors.As(err, &faults) {
+	if flagOf == nil || !errors.As(err, &faults) {
 		return err
 	}
 	out := make(dose.InputErrors, len(faults))
@@ -140,6 +146,7 @@ func flagErrors(err error, flagOf func(field string) string) error {
 		renamed := *f
 		if flag := flagOf(f.Field); flag != "" && f.Line == 0 {
 			renamed.File, renamed.Field = "", flag
+			renamed.Problem, renamed.Remedy = keysAsFlags.Replace(f.Problem), keysAsFlags.Replace(f.Remedy)
 		}
 		out[i] = &renamed
 	}

@@ -28,23 +28,25 @@ func defineForce(flags *pflag.FlagSet, force *bool) {
 	flags.BoolVar(force, "force", false, "replace files that exist")
 }
 
-// write puts the text on standard output and the record where --json says; the
-// record is only made when it is asked for.
-func (l *listingFlags) write(cmd *cobra.Command, record func() any, text string) error {
-	if l.json == "" {
-		return toStandardOutput(cmd, []byte(text))
+// write puts the text on standard output and the record where --json says, with
+// other files; the record is only made when it is asked for.
+func (l *listingFlags) write(cmd *cobra.Command, record func() any, text string, files ...output) error {
+	printed := []byte(text)
+	if l.json != "" {
+		data, err := marshal(record())
+		if err != nil {
+			return err
+		}
+		if l.json == "-" {
+			printed = data
+		} else {
+			files = append(files, output{flag: "--json", path: l.json, data: data})
+		}
 	}
-	data, err := marshal(record())
-	if err != nil {
+	if err := writeFiles(files, l.force); err != nil {
 		return err
 	}
-	if l.json == "-" {
-		return toStandardOutput(cmd, data)
-	}
-	if err := writeFiles([]output{{flag: "--json", path: l.json, data: data}}, l.force); err != nil {
-		return err
-	}
-	return toStandardOutput(cmd, []byte(text))
+	return toStandardOutput(cmd, printed)
 }
 
 // marshal writes JSON for people too: indented, < and > as they are.

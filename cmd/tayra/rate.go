@@ -11,12 +11,14 @@ import (
 
 	"tayra/dose"
 	"tayra/metabolic"
+	"tayra/reports"
 	"tayra/species"
 )
 
 func rateCommand() *cobra.Command {
 	var listing listingFlags
 	var temperature, q10 dose.Entry
+	var plot string
 	cmd := &cobra.Command{
 		Use:   "rate SPECIES MASS",
 		Short: "Show an animal's metabolic rate by every basis",
@@ -25,7 +27,7 @@ published line of its group, and why the other bases are not there. SPECIES and
 MASS are one argument each. A reptile or amphibian needs its body temperature.`,
 		Example: `tayra rate "giant anteater" "41 kg"
 tayra rate "green iguana" 2.5kg --temperature 30C
-tayra rate "blue-and-yellow macaw" "1.1 kg" --json rates.json`,
+tayra rate "blue-and-yellow macaw" "1.1 kg" --plot rates.svg`,
 		Annotations:       map[string]string{"usage": "tayra rate SPECIES MASS [flags]"},
 		Args:              arguments("SPECIES", "MASS"),
 		ValidArgsFunction: completeFirst(completeSpecies),
@@ -41,12 +43,25 @@ tayra rate "blue-and-yellow macaw" "1.1 kg" --json rates.json`,
 				}
 				warn(cmd.ErrOrStderr(), what, "changes nothing: the rate of a "+shortName(r.animal)+" does not follow its body temperature")
 			}
-			return listing.write(cmd, r.record, r.text())
+			var files []output
+			if plot != "" {
+				format, err := reports.FigureFormat(plot)
+				if err != nil {
+					return plotFault(err)
+				}
+				data, err := reports.RateFigure(r.animal, r.mass.Middle, r.temperature, r.q10, format)
+				if err != nil {
+					return &usageError{"--plot", err.Error(), ""}
+				}
+				files = append(files, output{flag: "--plot", path: plot, data: data})
+			}
+			return listing.write(cmd, r.record, r.text(), files...)
 		},
 	}
 	inGroup(cmd, "Flags", func(flags *pflag.FlagSet) {
 		flags.Var(&entryFlag{&temperature, "TEMP"}, "temperature", "body temperature, such as 30C or \"86 °F\"; needed for reptiles and amphibians")
 		flags.Var(&entryFlag{&q10, "NUMBER"}, "q10", "how the rate rises with 10 °C, from 1.5 to 4; 2.5 unless given")
+		flags.Var(&onceFlag{text: &plot, name: "FILE"}, "plot", "draw the measured animals of the class and the lines; the name ends in .svg, .png or .pdf")
 		listing.define(flags)
 	})
 	return cmd

@@ -25,7 +25,7 @@ Exit status: 0 done; 1 a stop left no dose, or a check found a difference;
 or exists and --force was not given.`,
 		Example: `tayra new case.yaml
 tayra draft case.yaml
-tayra draft case.yaml --json record.json
+tayra draft case.yaml --pdf worksheet.pdf --json record.json
 tayra species anteater`,
 		Annotations: map[string]string{"usage": "tayra COMMAND [flags]"},
 		Args:        cobra.ArbitraryArgs,

@@ -17,6 +17,10 @@ func takesColour(w io.Writer) bool {
 	if os.Getenv("NO_COLOR") != "" || os.Getenv("TERM") == "dumb" {
 		return false
 	}
+	return isTerminal(w)
+}
+
+func isTerminal(w io.Writer) bool {
 	_, ok := terminalWidth(w)
 	return ok
 }

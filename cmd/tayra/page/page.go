@@ -68,7 +68,7 @@ func Handler(host string) http.Handler {
 	post("/open", s.slow, maxFile, s.open)
 	post("/case", s.quick, maxCase, s.caseFile)
 	post("/record", s.quick, maxCase, s.record)
-	post("/worksheet", s.slow, maxCase, s.worksheet)
+	post("/worksheet/{paper}", s.slow, maxCase, s.worksheet)
 	return s.guard(mux)
 }
 

@@ -69,6 +69,7 @@ func newTerminal(o TextOptions) *terminal {
 		t.width = defaultWidth
 	}
 	t.width = max(t.width, leastWidth)
+	t.b.Grow(32 << 10) // of a whole worksheet
 	return t
 }
 
@@ -108,6 +109,7 @@ func (t *terminal) head(ws *dose.Worksheet, o TextOptions) {
 	if p.CommonName != "" && p.Species != "" {
 		name += " (" + p.Species + ")"
 	}
+	name += typedWords(p.Typed, p.CommonName, p.Species)
 	t.spread(styleNone, name, massWords(p.MassKg, p.MassLowKg, p.MassHighKg))
 	if o.Quiet {
 		t.blank()
@@ -184,6 +186,9 @@ func (t *terminal) draftBox(ws *dose.Worksheet) {
 		t.text(tableIndent, "The end of the bracket that follows volume: nine times in ten "+perKgRange(*m.VolumeRange90, m.Unit)+".")
 	}
 	t.text(0, d.Meaning)
+	if d.Disagreement != "" {
+		t.para(0, words{}, words{styleWarn, d.Disagreement})
+	}
 	t.blank()
 	t.para(0, words{}, words{worstStyle(ws), worstWords(ws)})
 	t.shut()

@@ -55,7 +55,7 @@ func TestDraftBox(t *testing.T) {
 		}
 		box := boxOf(t, e.ws)
 		for _, want := range []string{e.ws.Drug.Name, amountPair(d.PerAdministration, d.Unit), perKgPair(d.DosePerKg, d.Unit), d.Route, intervalWords(d.Plan, d.IntervalH),
-			perKgRange(d.Range50, d.Unit), perKgRange(d.Range90, d.Unit), amountRange(d.Range90Amount, d.Unit), d.Meaning, giveWords(e.ws.Product, d.Unit), levelWord(e.ws.Cautions[0].Level)} {
+			perKgRange(d.Range50, d.Unit), perKgRange(d.Range90, d.Unit), amountRange(d.Range90Amount, d.Unit), d.Meaning, d.Disagreement, giveWords(e.ws.Product, d.Unit), levelWord(e.ws.Cautions[0].Level)} {
 			if !strings.Contains(box, oneLine(want)) {
 				t.Errorf("%s: the box has no %q:\n%s", e.name, want, box)
 			}

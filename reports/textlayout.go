@@ -52,7 +52,7 @@ var boxLetters = strings.NewReplacer("┏", `\u250f`, "┓", `\u2513`, "┗", `\
 // shown is a text as it goes on the terminal.
 func shown(s string) string {
 	s = visible(s)
-	if strings.ContainsAny(s, "┏┓┗┛┃") {
+	if strings.Contains(s, "\xe2\x94") { // how each of them begins
 		s = boxLetters.Replace(s)
 	}
 	return s

@@ -32,6 +32,9 @@ func (t *terminal) plans(ws *dose.Worksheet) {
 	p := &ws.Patient
 	t.heading("FROM " + strings.ToUpper(modelName(m)) + " TO " + strings.ToUpper(animalWords(p.CommonName, p.Species)))
 	t.text(tableIndent, "Model: "+modelWords(m)+". Source: "+m.Source+".")
+	if typed := modelTyped(ws, ws.DraftedFrom.Index); typed != "" {
+		t.text(tableIndent, capital(modelName(m))+" ("+m.Model+")"+typed+".")
+	}
 	if f := ws.DraftedFrom; f.Why != "" && len(ws.Drafts) > 1 {
 		t.text(tableIndent, "Chosen among the models as "+f.Why+".")
 	}

@@ -5,6 +5,7 @@ import (
 	"math"
 	"regexp"
 	"strings"
+	"sync"
 	"unicode"
 	"unicode/utf8"
 
@@ -251,6 +252,24 @@ func patientName(p *dose.PatientRecord) string {
 		s = p.Name + ", " + s
 	}
 	return s
+}
+
+// typedWords says what was typed for an animal that is called otherwise here:
+// ", typed as domestic pigeon". It is empty where one of its names was typed.
+func typedWords(typed, common, scientific string) string {
+	typed = strings.TrimSpace(typed)
+	if typed == "" || strings.EqualFold(typed, common) || strings.EqualFold(typed, scientific) {
+		return ""
+	}
+	return ", typed as " + typed
+}
+
+// modelTyped is the same of the model of a draft.
+func modelTyped(ws *dose.Worksheet, i int) string {
+	if ws.Input == nil || i < 0 || i >= len(ws.Input.Models) || i >= len(ws.Drafts) {
+		return ""
+	}
+	return typedWords(ws.Input.Models[i].Species.Text, ws.Drafts[i].CommonName, ws.Drafts[i].Model)
 }
 
 // massWords says a mass as weighed or as estimated, with its ends.
@@ -526,21 +545,29 @@ func groupSources(sources []dose.SourceLine) []dose.SourceLine {
 	return out
 }
 
-var (
-	typedRange    = regexp.MustCompile(`([0-9])\s*[-–]\s*([0-9.])`)
-	typedNumber   = regexp.MustCompile(`[0-9]*\.?[0-9]+`)
-	typedIU       = regexp.MustCompile(`\b(IU|iu|U|u)\b`)
-	wordIU        = regexp.MustCompile(`\bIU\b`)
-	typedMicro    = regexp.MustCompile(`[µμ]g|\bug\b`)
-	typedUnspaced = regexp.MustCompile(`([0-9])([a-zA-Zµμ])`)
-	typedPerKg    = regexp.MustCompile(`(?i)/\s*kg\s*(/\s*h)?\s*$`)
-)
+// typedPatterns find what a person types otherwise than paper has it. They are
+// made on first use: most runs of the program need none of them.
+type typedPatterns struct{ doseRange, number, iu, micro, unspaced, perKg *regexp.Regexp }
+
+var typedForms = sync.OnceValue(func() *typedPatterns {
+	return &typedPatterns{
+		doseRange: regexp.MustCompile(`([0-9])\s*[-–]\s*([0-9.])`),
+		number:    regexp.MustCompile(`[0-9]*\.?[0-9]+`),
+		iu:        regexp.MustCompile(`\b(IU|iu|U|u)\b`),
+		micro:     regexp.MustCompile(`[µμ]g|\bug\b`),
+		unspaced:  regexp.MustCompile(`([0-9])([a-zA-Zµμ])`),
+		perKg:     regexp.MustCompile(`(?i)/\s*kg\s*(/\s*h)?\s*$`),
+	}
+})
+
+var wordIU = sync.OnceValue(func() *regexp.Regexp { return regexp.MustCompile(`\bIU\b`) })
 
 // asGiven says a dose as it was typed, by the rules of paper: ".5-1.0mg" is
 // "0.5 to 1 mg", IU is units, µg is mcg. The record keeps the letters typed.
 func asGiven(typed string) string {
-	s := typedRange.ReplaceAllString(strings.TrimSpace(typed), "$1 to $2")
-	s = typedNumber.ReplaceAllStringFunc(s, func(n string) string {
+	form := typedForms()
+	s := form.doseRange.ReplaceAllString(strings.TrimSpace(typed), "$1 to $2")
+	s = form.number.ReplaceAllStringFunc(s, func(n string) string {
 		if strings.HasPrefix(n, ".") {
 			n = "0" + n
 		}
@@ -549,17 +576,22 @@ func asGiven(typed string) string {
 		}
 		return n
 	})
-	s = typedMicro.ReplaceAllString(typedUnspaced.ReplaceAllString(s, "$1 $2"), "mcg")
-	return typedIU.ReplaceAllString(s, "units")
+	s = form.micro.ReplaceAllString(form.unspaced.ReplaceAllString(s, "$1 $2"), "mcg")
+	return form.iu.ReplaceAllString(s, "units")
 }
 
 // paperUnits says IU as paper does: units. It is for formulas and results that
 // are kept as text.
-func paperUnits(s string) string { return wordIU.ReplaceAllString(s, "units") }
+func paperUnits(s string) string {
+	if !strings.Contains(s, "IU") {
+		return s
+	}
+	return wordIU().ReplaceAllString(s, "units")
+}
 
 // isPerKg says whether a dose was typed per kg, or per kg and hour: then it is
 // printed once, not twice.
-func isPerKg(typed string) bool { return typed == "" || typedPerKg.MatchString(typed) }
+func isPerKg(typed string) bool { return typed == "" || typedForms().perKg.MatchString(typed) }
 
 // visible makes a text harmless where it is shown: what is not seen, or turns
 // the letters around it, stands there as its code point. A line break or a tab

@@ -47,6 +47,9 @@ func TestDoseWords(t *testing.T) {
 		{countWords(nil), "none raised, which is no evidence of safety"},
 		{countWords([]dose.Caution{{Level: dose.Stop}, {Level: dose.Note}, {Level: dose.Note}}), "1 stop, 2 notes"},
 		{planWords("both-adjusted"), "both adjusted"},
+		{typedWords("Dog ", "dog", "Canis lupus familiaris"), ""},
+		{typedWords("canis lupus familiaris", "dog", "Canis lupus familiaris"), ""},
+		{typedWords("domestic pigeon", "rock dove", "Columba livia"), ", typed as domestic pigeon"},
 		{paperUnits("2 IU/kg × 3"), "2 units/kg × 3"},
 	} {
 		if k.got != k.want {

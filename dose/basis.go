@@ -46,25 +46,63 @@ type noBasis struct {
 
 func (e *noBasis) Error() string { return e.basis.String() + ": " + e.why }
 
+// beyondMeasured is a mass too far from the one at which a rate was measured.
+// It is put into words only when it is printed: most cases ask for every basis
+// and then say nothing of those that are missing.
+type beyondMeasured struct{ measured, mass metabolic.Mass }
+
+func (e *beyondMeasured) Error() string {
+	return fmt.Sprintf("%s: measured at %s; a mass of %s is outside a quarter to four times that",
+		BasisMeasured, metabolic.FormatMass(e.measured), metabolic.FormatMass(e.mass))
+}
+
+// kindsDiffer says that the published lines of two animals are not of one kind.
+type kindsDiffer struct{ target, model *rateLine }
+
+func (e *kindsDiffer) Error() string {
+	return fmt.Sprintf("%s: the lines are of two kinds of rate (%s: %s, %s; %s: %s, %s), which are not compared", BasisEquation,
+		animalWords(e.target.animal), e.target.equation.ID, e.target.kind, animalWords(e.model.animal), e.model.equation.ID, e.model.kind)
+}
+
+// ofAnimal says which of two animals lacks a basis.
+type ofAnimal struct {
+	animal *species.Animal
+	err    error
+}
+
+func (e *ofAnimal) Error() string { return animalWords(e.animal) + ": " + e.err.Error() }
+func (e *ofAnimal) Unwrap() error { return e.err }
+
 // rateLine is one basis made ready for one animal. It is built once for an
 // animal and then asked at many masses and temperatures.
 type rateLine struct {
-	basis    Basis
-	animal   *species.Animal
-	equation *metabolic.Equation // group and equation
-	measured *species.Measured   // measured
-	kind     string              // BMR, SMR; "resting" for a measured row that is not basal
-	scatter  species.Scatter     // group and equation: how far species lie from the line
-	fallback string              // said when the animal had no group constant and this stands in
+	basis     Basis
+	animal    *species.Animal
+	equation  *metabolic.Equation    // group and equation
+	measured  *species.Measured      // measured
+	relatives *species.RelativesLine // relatives
+	kind      string                 // BMR, SMR; "resting" for a measured row that is not basal
+	scatter   species.Scatter        // group and equation: how far species lie from the line
+	fallback  string                 // said when the animal had no group constant and this stands in
 }
 
-// animalLines is every basis that one animal has, whatever its mass.
+// animalLines is every basis that one animal has, whatever its mass, and what
+// its body does to a drug.
 type animalLines struct {
-	group     *rateLine // nil without a group constant
-	class     *rateLine // the published line for its group or class
-	measured  *rateLine // nil when unmeasured or flagged
-	flag      string    // why a measured row is not used
-	relatives bool
+	animal     *species.Animal
+	group      *rateLine // nil without a group constant
+	class      *rateLine // the published line for its group or class
+	measured   *rateLine // nil when unmeasured or flagged
+	unmeasured error     // why
+	relatives  *rateLine
+	body       body
+}
+
+// body is what the tables of package species say of an animal's body.
+type body struct {
+	massNotBody                       string
+	gut                               string
+	eaten, renalPortal, amphibianSkin bool
 }
 
 var linesOf sync.Map // scientific name → *animalLines
@@ -75,7 +113,7 @@ func lines(a *species.Animal) *animalLines {
 	if l, ok := linesOf.Load(a.Name); ok {
 		return l.(*animalLines)
 	}
-	l := &animalLines{relatives: true}
+	l := &animalLines{animal: a, unmeasured: &noBasis{BasisMeasured, "its rate is not in the measured table"}}
 	if eq, ok := metabolic.GroupConstant(a.Group); ok {
 		l.group = equationLine(BasisGroup, eq, a)
 	}
@@ -84,7 +122,7 @@ func lines(a *species.Animal) *animalLines {
 	}
 	if m, ok := species.MeasuredRate(a); ok {
 		if m.Flag != "" {
-			l.flag = m.Flag
+			l.unmeasured = &noBasis{BasisMeasured, "the measured animal is marked " + m.Flag}
 		} else {
 			kind := m.Kind
 			if m.Grade == "not basal" {
@@ -93,6 +131,9 @@ func lines(a *species.Animal) *animalLines {
 			l.measured = &rateLine{basis: BasisMeasured, animal: a, measured: m, kind: kind}
 		}
 	}
+	l.relatives = &rateLine{basis: BasisRelatives, animal: a, relatives: species.RelativesOf(a), kind: "BMR or SMR"}
+	l.body = body{massNotBody: species.MassNotBody(a), gut: species.GutType(a), renalPortal: species.RenalPortal(a), amphibianSkin: species.AmphibianSkin(a)}
+	l.body.eaten, _ = species.CommonlyEaten(a)
 	actual, _ := linesOf.LoadOrStore(a.Name, l)
 	return actual.(*animalLines)
 }
@@ -148,8 +189,7 @@ func (l *rateLine) at(m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate,
 	case l.measured != nil:
 		w0 := l.measured.Mass
 		if m < w0/measuredReach || m > w0*measuredReach {
-			return r, &noBasis{BasisMeasured, fmt.Sprintf("measured at %s; a mass of %s is outside a quarter to four times that",
-				metabolic.FormatMass(w0), metabolic.FormatMass(m))}
+			return r, &beyondMeasured{w0, m}
 		}
 		r.watt = float64(l.measured.Rate) * math.Pow(float64(m/w0), measuredExponent)
 		if !l.animal.Endotherm() {
@@ -161,7 +201,7 @@ func (l *rateLine) at(m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate,
 			r.watt *= r.q10
 		}
 	default:
-		p, err := species.Relatives(l.animal, m, t)
+		p, err := l.relatives.At(m, t)
 		if err != nil {
 			return r, &noBasis{BasisRelatives, err.Error()}
 		}
@@ -193,11 +233,11 @@ func (r *rate) massLimits() (low, high metabolic.Mass, ok bool) {
 // lowConfidence says that the row itself asks for caution.
 func (r *rate) lowConfidence() bool { return r.line.equation != nil && r.line.equation.LowConfidence }
 
-// basisRate is an animal's rate on a basis. An animal without a group constant
-// takes, for the group basis, its measured rate, then the published line for
-// its class.
-func basisRate(b Basis, eq *metabolic.Equation, a *species.Animal, m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate, error) {
-	l := lines(a)
+// on is the animal's rate on a basis. An animal without a group constant takes,
+// for the group basis, its measured rate, then the published line for its
+// class.
+func (l *animalLines) on(b Basis, eq *metabolic.Equation, m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate, error) {
+	a := l.animal
 	switch b {
 	case BasisGroup:
 		if l.group != nil {
@@ -222,35 +262,83 @@ func basisRate(b Basis, eq *metabolic.Equation, a *species.Animal, m metabolic.M
 		return rate{}, &noBasis{b, fmt.Sprintf("no published line for a %s", a.Group)}
 	case BasisMeasured:
 		if l.measured == nil {
-			if l.flag != "" {
-				return rate{}, &noBasis{b, "the measured animal is marked " + l.flag}
-			}
-			return rate{}, &noBasis{b, "its rate is not in the measured table"}
+			return rate{}, l.unmeasured
 		}
 		return l.measured.at(m, t, q10)
 	default:
-		return (&rateLine{basis: BasisRelatives, animal: a, kind: "BMR or SMR"}).at(m, t, q10)
+		return l.relatives.at(m, t, q10)
 	}
 }
 
-// pairRates are the rates of both animals on one basis. They fail together: a
+// basisRate is an animal's rate on a basis.
+func basisRate(b Basis, eq *metabolic.Equation, a *species.Animal, m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate, error) {
+	return lines(a).on(b, eq, m, t, q10)
+}
+
+// animalPair is the patient and a model animal, made ready to be asked for their
+// rates on one basis after the other.
+type animalPair struct {
+	c             *Case
+	m             *Model
+	target, model *animalLines
+	known         *modelRates // nil: nothing is remembered
+}
+
+func pairOf(c *Case, m *Model, known *modelRates) animalPair {
+	return animalPair{c, m, lines(c.Patient.Animal), lines(m.Animal), known}
+}
+
+// rates are the rates of both animals on one basis. They fail together: a
 // ratio of rates from two different bases is not one of the method's, except
 // where an animal has no group constant at all.
-func pairRates(b Basis, eq *metabolic.Equation, c *Case, m *Model) (t, mo rate, err error) {
-	q10 := c.Method.Q10
-	t, err = basisRate(b, eq, c.Patient.Animal, c.Patient.Mass.Middle, c.Patient.Temperature, q10)
-	if err != nil {
-		return t, mo, fmt.Errorf("%s: %w", animalWords(c.Patient.Animal), err)
+func (p *animalPair) rates(b Basis, eq *metabolic.Equation) (t, mo rate, err error) {
+	patient := &p.c.Patient
+	if t, err = p.target.on(b, eq, patient.Mass.Middle, patient.Temperature, p.c.Method.Q10); err != nil {
+		return t, mo, &ofAnimal{patient.Animal, err}
 	}
-	mo, err = basisRate(b, eq, m.Animal, m.Mass.Middle, m.Temperature, q10)
-	if err != nil {
-		return t, mo, fmt.Errorf("%s: %w", animalWords(m.Animal), err)
+	if mo, err = p.modelRate(b, eq); err != nil {
+		return t, mo, &ofAnimal{p.m.Animal, err}
 	}
 	if b == BasisEquation && t.line.kind != mo.line.kind {
-		return t, mo, &noBasis{b, fmt.Sprintf("the lines are of two kinds of rate (%s: %s, %s; %s: %s, %s), which are not compared",
-			animalWords(c.Patient.Animal), t.line.equation.ID, t.line.kind, animalWords(m.Animal), mo.line.equation.ID, mo.line.kind)}
+		return t, mo, &kindsDiffer{t.line, mo.line}
 	}
 	return t, mo, nil
+}
+
+func (p *animalPair) modelRate(b Basis, eq *metabolic.Equation) (rate, error) {
+	m, q10 := p.m, p.c.Method.Q10
+	if p.known == nil {
+		return p.model.on(b, eq, m.Mass.Middle, m.Temperature, q10)
+	}
+	k := &p.known[b]
+	if of := (rateOf{m.Animal, m.Mass.Middle, m.Temperature, q10, eq}); k.of != of {
+		k.of = of
+		k.rate, k.err = p.model.on(b, eq, m.Mass.Middle, m.Temperature, q10)
+	}
+	return k.rate, k.err
+}
+
+// pairRates are the rates of the patient and a model animal on one basis.
+func pairRates(b Basis, eq *metabolic.Equation, c *Case, m *Model) (t, mo rate, err error) {
+	p := pairOf(c, m, nil)
+	return p.rates(b, eq)
+}
+
+// modelRates remembers a model's rates by basis, since rows of a table that
+// share a model ask for the same ones again and again.
+type modelRates [4]struct {
+	of   rateOf
+	rate rate
+	err  error
+}
+
+// rateOf is all that an animal's rate on a basis depends on.
+type rateOf struct {
+	animal   *species.Animal
+	mass     metabolic.Mass
+	t        metabolic.Celsius
+	q10      float64
+	equation *metabolic.Equation
 }
 
 // animalWords is the name by which a text calls an animal.

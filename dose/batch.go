@@ -257,7 +257,7 @@ type RowDrafter struct {
 	masses       memo[part[metabolic.BodyMass]]
 	temperatures memo[part[metabolic.Celsius]]
 	settings     memo[part[setting]]
-	models       memo[part[Model]]
+	models       memo[part[knownModel]]
 	hazards      hazardMemo
 	key          []byte
 }
@@ -269,9 +269,16 @@ type part[T any] struct {
 	errs  InputErrors
 }
 
+// knownModel is a model and its metabolic rates.
+type knownModel struct {
+	Model
+	rates *modelRates
+}
+
 // setting is the drug and the state of the patient.
 type setting struct {
 	drug          Drug
+	traits        *drugTraits
 	stage         Stage
 	conditions    Condition
 	foodProducing Answer
@@ -281,7 +288,7 @@ type setting struct {
 func (b *Batch) Drafter() *RowDrafter {
 	d := &RowDrafter{batch: b, c: b.first}
 	d.c.Models = make([]Model, 1)
-	d.n.hazards = d.hazards.match
+	d.n.recall.hazards = d.hazards.match
 	return d
 }
 
@@ -334,12 +341,12 @@ func (d *RowDrafter) read(row *Row) InputErrors {
 		return part[metabolic.Celsius]{t, ok, k.faults()}
 	})
 	set := d.settings.get(d.join(row, settingColumns), func() part[setting] { return d.batch.readSetting(row) })
-	model := d.models.get(d.join(row, modelColumns), func() part[Model] { return d.batch.readModel(row) })
+	model := d.models.get(d.join(row, modelColumns), func() part[knownModel] { return d.batch.readModel(row) })
 
 	c.Patient = Patient{Animal: animal.value, Mass: mass.value, Temperature: temperature.value, HasTemperature: temperature.given,
 		Stage: set.value.stage, Conditions: set.value.conditions, FoodProducing: set.value.foodProducing}
-	c.Drug = set.value.drug
-	c.Models[0] = model.value
+	c.Drug, d.n.recall.drug = set.value.drug, set.value.traits
+	c.Models[0], d.n.recall.model = model.value.Model, model.value.rates
 	errs := who
 	for _, e := range [...]InputErrors{animal.errs, mass.errs, temperature.errs, set.errs, model.errs} {
 		if len(e) > 0 {
@@ -393,14 +400,14 @@ func (b *Batch) readSetting(row *Row) part[setting] {
 	}
 	k.state(&in.Patient, c)
 	k.drug(in, c)
-	return part[setting]{setting{c.Drug, c.Patient.Stage, c.Patient.Conditions, c.Patient.FoodProducing}, true, k.faults()}
+	return part[setting]{setting{c.Drug, traitsOf(&c.Drug), c.Patient.Stage, c.Patient.Conditions, c.Patient.FoodProducing}, true, k.faults()}
 }
 
-func (b *Batch) readModel(row *Row) part[Model] {
+func (b *Batch) readModel(row *Row) part[knownModel] {
 	in, k, c := b.partly(row, modelColumns...), &checker{}, &Case{}
 	k.models(in, c)
 	k.temperatures(in, c)
-	return part[Model]{c.Models[0], true, k.faults()}
+	return part[knownModel]{knownModel{c.Models[0], &modelRates{}}, true, k.faults()}
 }
 
 // faults are the faults found, by column, without spare room: what is appended

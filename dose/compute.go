@@ -20,13 +20,21 @@ type numbers struct {
 
 	proposedRaised []raised // what a proposed regimen raises of itself
 
-	// hazards looks hazards up; nil is species.MatchHazards. A batch, which
-	// asks the same again and again, remembers the answers.
+	recall recall
+}
+
+// recall is what a table remembers from one row to the next, so that what is
+// equal between rows is found once. Outside of a table it is empty, and
+// everything is found where it is needed.
+type recall struct {
+	model   *modelRates // of the only model
+	drug    *drugTraits
 	hazards func(drug, class string, a *species.Animal, route string) []species.HazardMatch
 }
 
 // modelNumbers is the draft from one model.
 type modelNumbers struct {
+	pair          animalPair
 	target, model rate
 	m, r, s       float64 // ratios of mass, of metabolic rate, and mass-specific
 	plans         []planNumbers
@@ -50,6 +58,7 @@ func compute(c *Case, n *numbers) error {
 	}
 	n.models = n.models[:len(c.Models)]
 	for i := range c.Models {
+		n.models[i].pair = pairOf(c, &c.Models[i], n.recall.model)
 		if err := computeModel(c, i, &n.models[i]); err != nil {
 			return err
 		}
@@ -78,7 +87,7 @@ func compute(c *Case, n *numbers) error {
 
 func computeModel(c *Case, i int, n *modelNumbers) error {
 	m := &c.Models[i]
-	t, mo, err := pairRates(c.Method.Basis, c.Method.Equation, c, m)
+	t, mo, err := n.pair.rates(c.Method.Basis, c.Method.Equation)
 	if err != nil {
 		return basisError(c, i, err)
 	}

@@ -43,6 +43,19 @@ var immobiliserWords = []string{
 	"lofentanil", "ohmefentanyl",
 }
 
+// drugTraits is what a drug's name and class say of it.
+type drugTraits struct {
+	effect     Level // of effect-driven; "" if it is not
+	what       string
+	antibiotic bool
+}
+
+func traitsOf(d *Drug) *drugTraits {
+	t := &drugTraits{antibiotic: isAntibiotic(d.Class)}
+	t.effect, t.what = effectDriven(d.Name, d.Class)
+	return t
+}
+
 // effectDriven says whether the drug's name or class marks it as driven by
 // receptors, at which level, and what it is.
 func effectDriven(name, class string) (Level, string) {

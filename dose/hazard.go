@@ -37,7 +37,7 @@ func raiseHazards(c *Case, n *numbers) {
 	if route == "" {
 		route = c.Models[n.from].Route
 	}
-	find := n.hazards
+	find := n.recall.hazards
 	if find == nil {
 		find = species.MatchHazards
 	}
@@ -49,21 +49,21 @@ func raiseHazards(c *Case, n *numbers) {
 }
 
 // raiseAnatomy notes what the patient's body does to the route.
-func raiseAnatomy(c *Case, n *numbers, add adder) {
-	a := c.Patient.Animal
+func raiseAnatomy(c *Case, n *numbers, traits *drugTraits, add adder) {
+	body := &n.models[0].pair.target.body
 	route := c.Drug.Route
 	if route == "" {
 		route = c.Models[n.from].Route
 	}
-	if species.RenalPortal(a) && !oralRoute(route) && (c.Drug.Elimination == Renal || c.Drug.Elimination == Mixed || c.Drug.Elimination == EliminationUnknown) {
+	if body.renalPortal && !oralRoute(route) && (c.Drug.Elimination == Renal || c.Drug.Elimination == Mixed || c.Drug.Elimination == EliminationUnknown) {
 		add(Anatomy, Note, -1).detail = "renal portal"
 	}
-	if oralRoute(route) && isAntibiotic(c.Drug.Class) {
-		if g := species.GutType(a); g == "hindgut fermenter" || g == "ruminant" || g == "foregut fermenter" {
+	if traits.antibiotic && oralRoute(route) {
+		if g := body.gut; g == "hindgut fermenter" || g == "ruminant" || g == "foregut fermenter" {
 			add(Anatomy, Warn, -1).detail = "fermenting gut"
 		}
 	}
-	if species.AmphibianSkin(a) {
+	if body.amphibianSkin {
 		add(Anatomy, Note, -1).detail = "amphibian skin"
 	}
 }

@@ -109,7 +109,8 @@ func raiseAnimal(c *Case, n *numbers, add adder) {
 			add(PatientCondition, Warn, -1).detail = cond.word
 		}
 	}
-	if what := species.MassNotBody(a); what != "" || p.Conditions&Gravid != 0 {
+	body := &n.models[0].pair.target.body
+	if what := body.massNotBody; what != "" || p.Conditions&Gravid != 0 {
 		if what == "" {
 			what = "eggs"
 		} else if p.Conditions&Gravid != 0 {
@@ -121,7 +122,7 @@ func raiseAnimal(c *Case, n *numbers, add adder) {
 	case Yes:
 		add(FoodAnimal, Warn, -1, 1)
 	case NotSaid:
-		if eaten, _ := species.CommonlyEaten(a); eaten {
+		if body.eaten {
 			add(FoodAnimal, Warn, -1, 0)
 		}
 	}
@@ -185,7 +186,7 @@ func raiseModel(c *Case, n *numbers, i int, add adder) {
 	if mn.target.line.basis == BasisGroup || mn.model.line.basis == BasisGroup {
 		add(GroupConstant, Note, i)
 	}
-	raiseDisagreement(c, m, mn, i, th, add)
+	raiseDisagreement(c, mn, i, th, add)
 	if outside(s, th.LargeChange) {
 		add(LargeChange, Warn, i, s)
 	}
@@ -222,11 +223,11 @@ func raiseModel(c *Case, n *numbers, i int, add adder) {
 	if route == "" {
 		route = c.Models[n.from].Route
 	}
-	if route != "" && m.Route != "" && !sameRoute(route, m.Route) {
+	if route != "" && m.Route != "" && route != m.Route && !sameRoute(route, m.Route) {
 		add(RouteDiffers, Warn, i).detail = m.Route
 	}
 	if oralRoute(route) || oralRoute(m.Route) {
-		if g, h := species.GutType(a), species.GutType(b); g != "" && h != "" && g != h {
+		if g, h := mn.pair.target.body.gut, mn.pair.model.body.gut; g != "" && h != "" && g != h {
 			add(GutType, Warn, i)
 		}
 	}
@@ -249,13 +250,13 @@ func raiseMassLimits(r *rate, m metabolic.Mass, whose int, add adder) {
 
 // raiseDisagreement holds S against S by every other basis that both animals
 // have, and raises the widest disagreement.
-func raiseDisagreement(c *Case, m *Model, mn *modelNumbers, i int, th *Thresholds, add adder) {
+func raiseDisagreement(c *Case, mn *modelNumbers, i int, th *Thresholds, add adder) {
 	worst, worstBasis := 1.0, BasisGroup
-	for _, b := range Bases() {
+	for b := BasisGroup; b <= BasisRelatives; b++ {
 		if b == c.Method.Basis {
 			continue
 		}
-		t, mo, err := pairRates(b, nil, c, m)
+		t, mo, err := mn.pair.rates(b, nil)
 		if err != nil {
 			continue
 		}
@@ -299,14 +300,18 @@ func raiseDrug(c *Case, n *numbers, add adder) {
 	if d.Controlled == Yes {
 		add(ControlledDrug, Warn, -1)
 	}
-	if l, what := effectDriven(d.Name, d.Class); l != "" {
-		add(EffectDriven, l, -1).detail = what
+	traits := n.recall.drug
+	if traits == nil {
+		traits = traitsOf(d)
+	}
+	if traits.effect != "" {
+		add(EffectDriven, traits.effect, -1).detail = traits.what
 	}
 	if against := suitabilityAgainst(d); against > 0 {
 		add(Suitability, Warn, -1, float64(against))
 	}
 	raiseHazards(c, n)
-	raiseAnatomy(c, n, add)
+	raiseAnatomy(c, n, traits, add)
 }
 
 // raiseCase is what the case as a whole raises.

@@ -5,6 +5,7 @@ import (
 	"github.com/spf13/pflag"
 
 	"tayra/dose"
+	"tayra/reports"
 )
 
 func checkCommand() *cobra.Command {
@@ -16,7 +17,8 @@ func checkCommand() *cobra.Command {
 against the drafted one: dose, daily amount, interval, and with a half-life the
 curves. The exit status is 1 when the two differ, when the proposed dose lies
 outside the nine-in-ten range or raises a stop, and when the draft itself is
-stopped. Agreement with the draft is no evidence of safety.`,
+stopped. Agreement with the draft is no evidence of safety. What the draft rests
+on is shown by "tayra draft".`,
 		Example: `tayra check check.yaml
 tayra check check.yaml --plot curves.svg --json check.json`,
 		Annotations:       map[string]string{"usage": "tayra check CASE.yaml [flags]"},
@@ -39,7 +41,7 @@ tayra check check.yaml --plot curves.svg --json check.json`,
 			if err != nil {
 				return err
 			}
-			if err := out.write(cmd, ws, c, false); err != nil {
+			if err := out.write(cmd, ws, c, reports.ProposedText); err != nil {
 				return err
 			}
 			if p := ws.Proposed; ws.Drafted == nil || p == nil || p.Differs || p.OutsideRange || p.RaisesStop {

@@ -55,7 +55,7 @@ tayra draft --date 2026-11-30 --species "giant anteater" --mass "41 kg" \
 			if err != nil {
 				return err
 			}
-			if err := out.write(cmd, ws, c, true); err != nil {
+			if err := out.write(cmd, ws, c, wholeText); err != nil {
 				return err
 			}
 			if ws.Drafted == nil {
@@ -182,9 +182,15 @@ func (w *worksheetFlags) check(cmd *cobra.Command) error {
 	return nil
 }
 
+// wholeText is the worksheet with every step.
+func wholeText(ws *dose.Worksheet, o reports.TextOptions) []byte {
+	o.Steps = true
+	return reports.Text(ws, o)
+}
+
 // write renders everything in memory, puts the files in place, all or none, and
-// then prints.
-func (w *worksheetFlags) write(cmd *cobra.Command, ws *dose.Worksheet, c *readCaseFile, steps bool) error {
+// then prints the text.
+func (w *worksheetFlags) write(cmd *cobra.Command, ws *dose.Worksheet, c *readCaseFile, text func(*dose.Worksheet, reports.TextOptions) []byte) error {
 	var files []output
 	var printed []byte
 	take := func(flag, path string, data []byte) {
@@ -225,7 +231,7 @@ func (w *worksheetFlags) write(cmd *cobra.Command, ws *dose.Worksheet, c *readCa
 		}
 	}
 	if w.pdf != "-" && w.json != "-" {
-		printed = reports.Text(ws, w.textOptions(cmd, steps))
+		printed = text(ws, w.textOptions(cmd))
 	}
 	var sources []string
 	if c.source != "" {
@@ -279,9 +285,9 @@ func letterFault(err error, c *readCaseFile) error {
 	return err
 }
 
-func (w *worksheetFlags) textOptions(cmd *cobra.Command, steps bool) reports.TextOptions {
+func (w *worksheetFlags) textOptions(cmd *cobra.Command) reports.TextOptions {
 	out := cmd.OutOrStdout()
-	o := reports.TextOptions{Width: w.width, Colour: takesColour(out), Quiet: w.quiet, Steps: steps}
+	o := reports.TextOptions{Width: w.width, Colour: takesColour(out), Quiet: w.quiet}
 	if o.Width == 0 {
 		o.Width = textWidth(out)
 	}

@@ -32,7 +32,11 @@ var dashes = [][]vg.Length{
 	{vg.Points(8), vg.Points(2), vg.Points(1.5), vg.Points(2)},
 	{vg.Points(3), vg.Points(1.5)},
 	{vg.Points(10), vg.Points(4)},
+	{vg.Points(1), vg.Points(3)}, // dashTarget
 }
+
+// dashTarget is of a line that is no course.
+const dashTarget = 6
 
 func lineStyle(width float64, dash int) draw.LineStyle {
 	return draw.LineStyle{Color: ink, Width: vg.Points(width), Dashes: dashes[dash%len(dashes)]}
@@ -190,5 +194,101 @@ func curve(xys plotter.XYs, st draw.LineStyle) drawing {
 			pts = append(pts, vg.Point{X: tx(q.X), Y: ty(q.Y)})
 		}
 		c.StrokeLines(st, c.ClipLinesXY(pts)...)
+	}
+}
+
+// sideLabel is a text left of a row of a figure.
+type sideLabel struct {
+	row  float64 // on the y axis
+	text string
+	bold bool
+}
+
+// sideLabels turns the y axis of a plot into rows that carry their texts at the
+// left, where no mark can run into them.
+func sideLabels(p *plot.Plot, rows float64, labels []sideLabel) {
+	p.HideY()
+	p.Y.Min, p.Y.Max = 0, rows
+	const air = 8 // points between a text and the figure
+	widest := vg.Length(0)
+	for _, l := range labels {
+		widest = max(widest, textWidth(sizeSmall, l.bold, l.text))
+	}
+	p.Y.Padding = widest + vg.Points(air)
+	p.Add(drawing(func(c draw.Canvas, p *plot.Plot) {
+		_, ty := p.Transforms(&c)
+		for _, l := range labels {
+			writeText(c, sizeSmall, l.bold, text.XRight, text.YCenter, vg.Point{X: c.Min.X - vg.Points(air), Y: ty(l.row)}, l.text)
+		}
+	}))
+}
+
+// axisName is the name of an upright axis, set level above it: it is read
+// without turning the sheet, and the library misplaces a turned one on a log
+// axis.
+type axisName string
+
+// Plot implements plot.Plotter.
+func (n axisName) Plot(c draw.Canvas, p *plot.Plot) {
+	writeText(c, sizeSmall, false, text.XLeft, text.YBottom, vg.Point{X: c.Min.X, Y: c.Max.Y + vg.Points(4)}, string(n))
+}
+
+// GlyphBoxes implements plot.GlyphBoxer: it asks for room above the figure.
+func (n axisName) GlyphBoxes(*plot.Plot) []plot.GlyphBox {
+	return []plot.GlyphBox{{X: 0, Y: 1, Rectangle: vg.Rectangle{Max: vg.Point{X: 1, Y: vg.Points(4 + sizeSmall*1.2)}}}}
+}
+
+// pointShape is the form of a mark: figures tell marks apart by form, not by
+// colour.
+type pointShape int
+
+const (
+	shapeDiamond pointShape = iota
+	shapeSquare
+	shapeTriangle
+)
+
+// point fills a mark of radius r, with a rim of paper around it that keeps it
+// apart from what lies behind.
+func point(c draw.Canvas, s pointShape, at vg.Point, r vg.Length) {
+	corners := func(r vg.Length) []vg.Point {
+		switch s {
+		case shapeSquare:
+			r *= 0.85
+			return []vg.Point{{X: at.X - r, Y: at.Y - r}, {X: at.X - r, Y: at.Y + r}, {X: at.X + r, Y: at.Y + r}, {X: at.X + r, Y: at.Y - r}}
+		case shapeTriangle:
+			return []vg.Point{{X: at.X - r, Y: at.Y - r*0.8}, {X: at.X, Y: at.Y + r}, {X: at.X + r, Y: at.Y - r*0.8}}
+		}
+		return []vg.Point{{X: at.X - r, Y: at.Y}, {X: at.X, Y: at.Y + r}, {X: at.X + r, Y: at.Y}, {X: at.X, Y: at.Y - r}}
+	}
+	c.FillPolygon(paperWhite, corners(r+vg.Points(1.2)))
+	c.FillPolygon(ink, corners(r))
+}
+
+// diamond fills a mark for one value.
+func diamond(c draw.Canvas, at vg.Point, r vg.Length) {
+	c.FillPolygon(ink, []vg.Point{{X: at.X - r, Y: at.Y}, {X: at.X, Y: at.Y + r}, {X: at.X + r, Y: at.Y}, {X: at.X, Y: at.Y - r}})
+}
+
+// bar returns the corners of a bar from a to b.
+func bar(y, half, a, b vg.Length) []vg.Point {
+	return []vg.Point{{X: a, Y: y - half}, {X: b, Y: y - half}, {X: b, Y: y + half}, {X: a, Y: y + half}, {X: a, Y: y - half}}
+}
+
+// key is one line of the key to a figure.
+type key struct {
+	name string
+	st   draw.LineStyle
+}
+
+// keyAt writes the key to a figure into its upper left corner, which is empty
+// where what is shown rises to the right.
+func keyAt(keys []key) drawing {
+	return func(c draw.Canvas, p *plot.Plot) {
+		for i, k := range keys {
+			y := c.Max.Y - vg.Points(6+float64(i)*sizeSmall*1.45)
+			c.StrokeLine2(k.st, c.Min.X+vg.Points(8), y, c.Min.X+vg.Points(36), y)
+			writeText(c, sizeSmall, false, text.XLeft, text.YCenter, vg.Point{X: c.Min.X + vg.Points(41), Y: y}, k.name)
+		}
 	}
 }

@@ -55,13 +55,14 @@ func curvesPlot(w *dose.Worksheet) *plot.Plot {
 		span = math.Ceil(span/longest-1e-9) * longest
 	}
 	p := newPlot()
-	p.X.Label.Text, p.Y.Label.Text = "hours after the first dose", "concentration, "+curves[0].Unit
+	p.X.Label.Text = "hours after the first dose"
+	p.Add(axisName("concentration, " + paperUnits(curves[0].Unit)))
 	p.X.Tick.Marker, p.Y.Tick.Marker = hourTicks{span}, evenTicks{}
 	p.X.Min, p.X.Max = 0, span*1.3 // room for the names at the lines
 	top := 0.0
 	xys := make([]plotter.XYs, len(curves))
 	for i, cv := range curves {
-		for _, q := range cv.Points(0, span, curvePoints) {
+		for _, q := range cv.Points(0, span*(1-1e-6), curvePoints) {
 			xys[i] = append(xys[i], plotter.XY{X: q.H, Y: q.C})
 			top = math.Max(top, q.C)
 		}
@@ -79,16 +80,16 @@ func curvesPlot(w *dose.Worksheet) *plot.Plot {
 	}
 	p.Add(drawing(func(c draw.Canvas, p *plot.Plot) {
 		tx, ty := p.Transforms(&c)
-		if w.Target != nil && curves[0].Unit == w.Target.Unit {
-			y := ty(w.Target.PerLitre)
-			c.StrokeLine2(draw.LineStyle{Color: ink, Width: vg.Points(0.7), Dashes: []vg.Length{vg.Points(1), vg.Points(3)}}, c.Min.X, y, tx(span), y)
-			writeText(c, sizeSmall, false, text.XRight, text.YBottom, vg.Point{X: tx(span), Y: y + 1}, "target "+metabolic.Significant(w.Target.PerLitre, 3)+" "+w.Target.Unit)
-		}
 		// Names at the ends of the lines, moved apart, with a leader.
 		ls := make([]labelled, len(curves))
 		for i, cv := range curves {
 			last := xys[i][len(xys[i])-1]
 			ls[i] = labelled{y: ty(last.Y), from: ty(last.Y), text: curveLabel(w, cv), dash: curveDash(cv.Name), bold: w.Drafted != nil && cv.Name == w.Drafted.Plan}
+		}
+		if w.Target != nil && curves[0].Unit == w.Target.Unit {
+			y := ty(w.Target.PerLitre)
+			c.StrokeLine2(lineStyle(0.7, dashTarget), c.Min.X, y, tx(span), y)
+			ls = append(ls, labelled{y: y, from: y, text: "target " + metabolic.Significant(w.Target.PerLitre, 3) + " " + paperUnits(w.Target.Unit), dash: dashTarget})
 		}
 		gap := vg.Points(sizeSmall * 1.35)
 		spreadLabels(ls, gap, c.Min.Y+gap/2, c.Max.Y-gap/2)

@@ -23,7 +23,7 @@ func fitPlot(f *dose.FitRecord) *plot.Plot {
 	}
 	p := newPlot()
 	p.X.Label.Text = "body mass, kg"
-	p.Y.Label.Text = parameterWords(f.Parameter) + ", " + f.Unit
+	p.Add(axisName(parameterWords(f.Parameter) + ", " + paperUnits(f.Unit)))
 	lowX, highX := f.AtTarget.MassKg, f.AtTarget.MassKg
 	lowY, highY := f.AtTarget.PI95[0], f.AtTarget.PI95[1]
 	for _, q := range f.Points {
@@ -51,17 +51,18 @@ func fitPlot(f *dose.FitRecord) *plot.Plot {
 		piL, piH = append(piL, plotter.XY{X: x, Y: e.PI95[0]}), append(piH, plotter.XY{X: x, Y: e.PI95[1]})
 		fixed = append(fixed, plotter.XY{X: x, Y: f.Fixed.A * math.Pow(x, f.Fixed.Exponent)})
 	}
+	var keys []key
 	named := func(name string, st draw.LineStyle, xs ...plotter.XYs) {
 		for _, x := range xs {
 			p.Add(curve(x, st))
 		}
-		p.Legend.Add(name, thumbnail{st})
+		keys = append(keys, key{name, st})
 	}
 	named("fitted line, exponent "+metabolic.Significant(f.B, 3), lineStyle(1.4, 0), mid)
 	named("95 % confidence of the line", lineStyle(0.8, 1), ciL, ciH)
 	named("95 % prediction of one animal", lineStyle(0.8, 2), piL, piH)
 	named("exponent "+metabolic.Significant(f.Fixed.Exponent, 3)+" through the same animals", lineStyle(0.7, 3), fixed)
-	p.Legend.Top, p.Legend.Left, p.Legend.XOffs = true, true, vg.Points(6)
+	p.Add(keyAt(keys))
 	p.Add(drawing(func(c draw.Canvas, p *plot.Plot) {
 		tx, ty := p.Transforms(&c)
 		for _, q := range f.Points {

@@ -34,9 +34,9 @@ type rateLineDrawn struct {
 func ratePlot(class string, lines []rateLineDrawn, marks []rateMark) *plot.Plot {
 	p := newPlot()
 	p.X.Label.Text = "body mass, kg"
-	p.Y.Label.Text = "metabolic rate, kcal/day"
+	name := "metabolic rate, kcal/day"
 	if class == "Reptilia" || class == "Amphibia" {
-		p.Y.Label.Text += ", each as measured"
+		name += ", each at the temperature it was measured at"
 	}
 	kcal := func(w float64) float64 { return metabolic.Power(w).KcalPerDay() }
 	lowM, highM, lowB, highB := math.Inf(1), 0.0, math.Inf(1), 0.0
@@ -62,13 +62,14 @@ func ratePlot(class string, lines []rateLineDrawn, marks []rateMark) *plot.Plot 
 		return nil
 	}
 	logAxis(&p.X, lowM/1.5, highM*1.5)
-	logAxis(&p.Y, lowB/1.5, highB*2)
+	logAxis(&p.Y, lowB/1.5, highB*6) // room for the key
 	p.Add(drawing(func(c draw.Canvas, p *plot.Plot) {
 		tx, ty := p.Transforms(&c)
 		for _, q := range pts {
 			c.DrawGlyph(draw.GlyphStyle{Color: grey, Radius: vg.Points(1.2), Shape: draw.RingGlyph{}}, vg.Point{X: tx(q.X), Y: ty(q.Y)})
 		}
 	}))
+	var keys []key
 	for _, l := range lines {
 		var xys plotter.XYs
 		const n = 60
@@ -80,42 +81,28 @@ func ratePlot(class string, lines []rateLineDrawn, marks []rateMark) *plot.Plot 
 		}
 		if len(xys) > 1 {
 			p.Add(curve(xys, lineStyle(1.1, l.dash)))
-			p.Legend.Add(l.name, thumbnail{lineStyle(1.1, l.dash)})
+			keys = append(keys, key{l.name, lineStyle(1.1, l.dash)})
 		}
 	}
-	p.Legend.Top, p.Legend.Left, p.Legend.XOffs = true, true, vg.Points(6)
+	p.Add(keyAt(keys), axisName(name))
+	// Their key stands in the lower right corner, which rates that rise with
+	// mass leave empty. The first mark, the animal in question, lies on top.
 	p.Add(drawing(func(c draw.Canvas, p *plot.Plot) {
 		tx, ty := p.Transforms(&c)
+		widest := vg.Length(0)
 		for _, m := range marks {
-			at := vg.Point{X: tx(m.mass), Y: ty(kcal(m.watt))}
-			r := vg.Points(3.4)
-			c.FillPolygon(ink, []vg.Point{{X: at.X - r, Y: at.Y}, {X: at.X, Y: at.Y + r}, {X: at.X + r, Y: at.Y}, {X: at.X, Y: at.Y - r}})
-			align, x := text.XLeft, at.X+vg.Points(6)
-			if x+textWidth(sizeSmall, m.bold, m.name) > c.Max.X {
-				align, x = text.XRight, at.X-vg.Points(6)
-			}
-			y := at.Y - vg.Points(5)
-			// A ground of paper under the name, so that the points behind it
-			// do not eat its letters.
-			wide := textWidth(sizeSmall, m.bold, m.name)
-			x0 := x
-			if align == text.XRight {
-				x0 = x - wide
-			}
-			c.FillPolygon(paperWhite, []vg.Point{{X: x0 - 1, Y: y - vg.Points(5)}, {X: x0 + wide + 1, Y: y - vg.Points(5)}, {X: x0 + wide + 1, Y: y + vg.Points(5)}, {X: x0 - 1, Y: y + vg.Points(5)}})
-			writeText(c, sizeSmall, m.bold, align, text.YCenter, vg.Point{X: x, Y: y}, m.name)
+			widest = max(widest, textWidth(sizeSmall, m.bold, m.name))
+		}
+		x := c.Max.X - widest - vg.Points(4)
+		for i := len(marks) - 1; i >= 0; i-- {
+			m := marks[i]
+			y := c.Min.Y + vg.Points(8+float64(len(marks)-1-i)*sizeSmall*1.5)
+			point(c, pointShape(i), vg.Point{X: tx(m.mass), Y: ty(kcal(m.watt))}, vg.Points(4.5))
+			point(c, pointShape(i), vg.Point{X: x - vg.Points(9), Y: y}, vg.Points(4.5))
+			writeText(c, sizeSmall, m.bold, text.XLeft, text.YCenter, vg.Point{X: x, Y: y}, m.name)
 		}
 	}))
 	return p
-}
-
-// thumbnail is a piece of line in a legend.
-type thumbnail struct{ st draw.LineStyle }
-
-// Thumbnail implements plot.Thumbnailer.
-func (t thumbnail) Thumbnail(c *draw.Canvas) {
-	y := c.Center().Y
-	c.StrokeLine2(t.st, c.Min.X, y, c.Max.X, y)
 }
 
 // linesOfAnimal are the lines that an animal's group and class are held

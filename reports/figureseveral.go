@@ -2,14 +2,13 @@ package reports
 
 import (
 	"math"
+	"strings"
 
 	"gonum.org/v1/plot"
-	"gonum.org/v1/plot/text"
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
 
 	"tayra/dose"
-	"tayra/metabolic"
 )
 
 // severalHeight is how many points the figure of several models needs.
@@ -17,49 +16,49 @@ func severalHeight(w *dose.Worksheet) float64 {
 	if w.Several == nil {
 		return 0
 	}
-	return 58 + 15*float64(len(w.Several.Models))
+	return 50 + 13.5*float64(len(w.Several.Models)+2)
 }
 
 // severalPlot is the drafted daily amount from each model on a log axis, with
-// the mean and the nine-in-ten range of the summary. Nil for one model.
+// the mean and the ranges of the summary. Nil for one model.
 func severalPlot(w *dose.Worksheet) *plot.Plot {
 	s := w.Several
 	if s == nil {
 		return nil
 	}
+	unit := strings.TrimSuffix(s.Unit, "/day")
 	low, high := math.Min(s.Low, s.Range90.Low), math.Max(s.High, s.Range90.High)
 	p := newPlot()
-	p.HideY()
 	logAxis(&p.X, low/1.2, high*1.2)
-	p.X.Label.Text = "drafted daily amount, " + s.Unit + ", log scale"
-	rows := float64(len(s.Models) + 1)
-	p.Y.Min, p.Y.Max = 0, rows
+	p.X.Label.Text = "drafted daily amount, " + paperUnits(s.Unit) + ", log scale"
+	rows := float64(len(s.Models) + 2)
+	labels := []sideLabel{
+		{row: rows - 0.5, text: "nine times in ten: " + dailyPair(&dose.Pair{s.Range90.Low, s.Range90.High}, unit)},
+		{row: rows - 1.5, text: "as likely as not: " + dailyPair(&dose.Pair{s.Range50.Low, s.Range50.High}, unit)},
+	}
+	from := draftedModel(w)
+	for i, m := range s.Models {
+		l := sideLabel{row: rows - 2.5 - float64(i), text: animalWords(m.CommonName, m.Model) + ": " + dailyWords(m.DraftedDaily, unit)}
+		if from != nil && from == &w.Drafts[i] {
+			l.text, l.bold = "drafted from, "+l.text, true
+		}
+		labels = append(labels, l)
+	}
+	sideLabels(p, rows, labels)
 	p.Add(drawing(func(c draw.Canvas, p *plot.Plot) {
 		tx, ty := p.Transforms(&c)
-		y := ty(rows - 0.5)
-		h := vg.Points(5)
-		c.StrokeLines(lineStyle(0.8, 0), []vg.Point{{X: tx(s.Range90.Low), Y: y - h}, {X: tx(s.Range90.High), Y: y - h}, {X: tx(s.Range90.High), Y: y + h}, {X: tx(s.Range90.Low), Y: y + h}, {X: tx(s.Range90.Low), Y: y - h}})
-		c.StrokeLine2(lineStyle(0.6, 1), tx(s.MeanDailyPerKg), ty(0), tx(s.MeanDailyPerKg), y+h)
-		writeText(c, sizeSmall, false, text.XLeft, text.YCenter, vg.Point{X: tx(s.MeanDailyPerKg) + vg.Points(4), Y: y}, "mean "+metabolic.Significant(s.MeanDailyPerKg, 3)+", bar: nine in ten")
+		mean := tx(s.MeanDailyPerKg)
+		c.StrokeLine2(lineStyle(0.6, 1), mean, ty(0), mean, ty(rows))
+		open := bar(ty(rows-0.5), vg.Points(4), tx(s.Range90.Low), tx(s.Range90.High))
+		c.FillPolygon(paperWhite, open)
+		c.StrokeLines(lineStyle(0.9, 0), open)
+		c.FillPolygon(ink, bar(ty(rows-1.5), vg.Points(4), tx(s.Range50.Low), tx(s.Range50.High)))
 		for i, m := range s.Models {
-			y := ty(rows - 1.5 - float64(i))
-			r := vg.Points(3)
-			x := tx(m.DraftedDaily)
-			c.FillPolygon(ink, []vg.Point{{X: x - r, Y: y}, {X: x, Y: y + r}, {X: x + r, Y: y}, {X: x, Y: y - r}})
-			name := m.CommonName
-			if name == "" {
-				name = m.Model
+			r := vg.Points(2.8)
+			if from != nil && from == &w.Drafts[i] {
+				r = vg.Points(4)
 			}
-			bold := w.DraftedFrom != nil && w.Drafts[w.DraftedFrom.Index].Model == m.Model
-			label := name + ": " + metabolic.Significant(m.DraftedDaily, 3)
-			if bold {
-				label += " (drafted from)"
-			}
-			at, align := vg.Point{X: x + vg.Points(7), Y: y}, text.XLeft
-			if at.X+textWidth(sizeSmall, bold, label) > c.Max.X {
-				at, align = vg.Point{X: x - vg.Points(7), Y: y}, text.XRight
-			}
-			writeText(c, sizeSmall, bold, align, text.YCenter, at, label)
+			diamond(c, vg.Point{X: tx(m.DraftedDaily), Y: ty(rows - 2.5 - float64(i))}, r)
 		}
 	}))
 	return p

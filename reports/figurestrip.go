@@ -1,11 +1,9 @@
 package reports
 
 import (
-	"fmt"
 	"math"
 
 	"gonum.org/v1/plot"
-	"gonum.org/v1/plot/text"
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
 
@@ -36,7 +34,7 @@ func stripLines(w *dose.Worksheet) []stripLine {
 }
 
 // stripHeight is how many points the strip needs on paper.
-func stripHeight(w *dose.Worksheet) float64 { return 62 + 14*float64(len(stripLines(w))) }
+func stripHeight(w *dose.Worksheet) float64 { return 50 + 13.5*float64(len(stripLines(w))+2) }
 
 // toModelInterval carries a dose of the draft to the model's interval, at which
 // the doses of the strip are given, by its daily amount: that is what the ranges
@@ -73,62 +71,52 @@ func stripPlot(w *dose.Worksheet) *plot.Plot {
 		return nil
 	}
 	f := toModelInterval(w)
-	range90, range50 := [2]float64{d.Range90.Low * f, d.Range90.High * f}, [2]float64{d.Range50.Low * f, d.Range50.High * f}
-	drafted := [2]float64{d.DosePerKg[0] * f, d.DosePerKg[1] * f}
+	range90, range50 := dose.Pair{d.Range90.Low * f, d.Range90.High * f}, dose.Pair{d.Range50.Low * f, d.Range50.High * f}
+	drafted := dose.Pair{d.DosePerKg[0] * f, d.DosePerKg[1] * f}
 	low, high := math.Min(range90[0], drafted[0]), math.Max(range90[1], drafted[1])
 	for _, l := range lines {
 		low, high = math.Min(low, l.low), math.Max(high, l.high)
 	}
 	p := newPlot()
-	p.HideY()
 	logAxis(&p.X, low/1.2, high*1.2)
-	p.X.Label.Text = d.Unit + ", log scale"
+	p.X.Label.Text = paperUnits(d.Unit) + ", log scale"
 	rows := float64(len(lines) + 2)
-	p.Y.Min, p.Y.Max = 0, rows
+	labels := []sideLabel{
+		{row: rows - 0.5, text: "nine times in ten: " + perKgPair(range90, d.Unit)},
+		{row: rows - 1.5, text: "as likely as not: " + perKgPair(range50, d.Unit)},
+	}
+	for i, l := range lines {
+		text := l.name + ": " + perKgPair(dose.Pair{l.low, l.high}, d.Unit)
+		if l.drafted {
+			text = "drafted, " + text
+		}
+		labels = append(labels, sideLabel{row: rows - 2.5 - float64(i), text: text, bold: l.drafted})
+	}
+	sideLabels(p, rows, labels)
 	p.Add(drawing(func(c draw.Canvas, p *plot.Plot) {
 		tx, ty := p.Transforms(&c)
-		box := func(y, half vg.Length, a, b float64) []vg.Point {
-			return []vg.Point{{X: tx(a), Y: y - half}, {X: tx(b), Y: y - half}, {X: tx(b), Y: y + half}, {X: tx(a), Y: y + half}, {X: tx(a), Y: y - half}}
-		}
-		// The ranges, at the top: nine in ten as an open bar, even odds as a
-		// filled one inside it, the drafted dose as a cut through both.
-		y := ty(rows - 0.8)
-		c.StrokeLines(lineStyle(0.8, 0), box(y, vg.Points(6), range90[0], range90[1]))
-		c.FillPolygon(ink, box(y, vg.Points(3), range50[0], range50[1]))
-		writeText(c, sizeSmall, false, text.XLeft, text.YBottom, vg.Point{X: tx(range90[0]) + 1, Y: y + vg.Points(8)},
-			fmt.Sprintf("open bar: nine in ten, %s to %s; filled: even odds, %s to %s; line: drafted", metabolic.Significant(range90[0], 3), metabolic.Significant(range90[1], 3), metabolic.Significant(range50[0], 3), metabolic.Significant(range50[1], 3)))
+		// Nine in ten as an open bar, even odds as a filled one, the drafted
+		// dose as a broken line down through all rows.
 		for k, v := range drafted {
-			if k == 1 && drafted[0] == v {
-				break
+			if k == 0 || drafted[0] != v {
+				c.StrokeLine2(lineStyle(0.6, 1), tx(v), ty(0), tx(v), ty(rows))
 			}
-			st := lineStyle(0.6, 1)
-			c.StrokeLine2(st, tx(v), ty(0), tx(v), y-vg.Points(7))
 		}
+		open := bar(ty(rows-0.5), vg.Points(4), tx(range90[0]), tx(range90[1]))
+		c.FillPolygon(paperWhite, open)
+		c.StrokeLines(lineStyle(0.9, 0), open)
+		c.FillPolygon(ink, bar(ty(rows-1.5), vg.Points(4), tx(range50[0]), tx(range50[1])))
 		for i, l := range lines {
-			y := ty(rows - 2.1 - float64(i))
+			y := ty(rows - 2.5 - float64(i))
 			if l.high > l.low {
 				c.StrokeLine2(lineStyle(1.6, 0), tx(l.low), y, tx(l.high), y)
 			}
-			r := vg.Points(2.6)
+			r := vg.Points(2.8)
 			if l.drafted {
-				r = vg.Points(3.6)
+				r = vg.Points(4)
 			}
-			for _, v := range []float64{l.low, l.high} {
-				c.FillPolygon(ink, []vg.Point{{X: tx(v) - r, Y: y}, {X: tx(v), Y: y + r}, {X: tx(v) + r, Y: y}, {X: tx(v), Y: y - r}})
-			}
-			label := l.name + ": " + metabolic.Significant(l.low, 3)
-			if l.high > l.low {
-				label += " to " + metabolic.Significant(l.high, 3)
-			}
-			if l.drafted {
-				label += " (drafted)"
-			}
-			// The text goes to the side with more room.
-			at, align := vg.Point{X: tx(l.high) + vg.Points(7), Y: y}, text.XLeft
-			if wide := textWidth(sizeSmall, l.drafted, label); at.X+wide > c.Max.X {
-				at, align = vg.Point{X: tx(l.low) - vg.Points(7), Y: y}, text.XRight
-			}
-			writeText(c, sizeSmall, l.drafted, align, text.YCenter, at, label)
+			diamond(c, vg.Point{X: tx(l.low), Y: y}, r)
+			diamond(c, vg.Point{X: tx(l.high), Y: y}, r)
 		}
 	}))
 	return p

@@ -57,14 +57,19 @@ func (s *sheet) otherBases() {
 		}
 		t.rows = append(t.rows, tableRow{cells: [][]run{{cell(name)}, {cell(rate(b.PatientW))}, {cell(rate(b.ModelW))}, {cell(metabolic.FormatRatio(b.Specific))}, {cell(per)}}})
 	}
-	for i := range ws.Exponents {
-		e := &ws.Exponents[i]
-		t.rows = append(t.rows, tableRow{cells: cellTexts("exponent "+metabolic.FormatRatio(e.Exponent), paperText(e.Remark), "", metabolic.FormatRatio(e.Specific), perKgPair(e.DosePerKg, m.Unit)), rule: i == 0})
-	}
 	f.table(t)
 	for _, u := range ws.Unavailable {
 		f.bullet(paraStyle{}, bold("No "+u.Basis+": "), plain(paperText(u.Why)+"."))
 	}
+	if len(ws.Exponents) == 0 {
+		return
+	}
+	e := pageTable{columns: []tableColumn{{head: "exponent", align: alignDecimal}, {head: "S", align: alignDecimal}, {head: "dose per kg", align: alignDecimal}, {head: "of the group constants; whose"}}}
+	for i := range ws.Exponents {
+		x := &ws.Exponents[i]
+		e.rows = append(e.rows, tableRow{cells: cellTexts(metabolic.FormatRatio(x.Exponent), metabolic.FormatRatio(x.Specific), perKgPair(x.DosePerKg, m.Unit), paperText(x.Remark))})
+	}
+	f.table(e)
 }
 
 // temperatures is the draft of an ectotherm at other body temperatures.
@@ -118,14 +123,14 @@ func (s *sheet) rates() {
 	}
 	patient := animalWords(ws.Patient.CommonName, ws.Patient.Species)
 	marks := []rateMark{{name: at("patient: "+patient, ws.Patient.TemperatureC), mass: ws.Patient.MassKg, watt: ws.Patient.RateW, bold: true}}
-	caption := "Rings: the measured animals of the class " + ws.Patient.Class + ". Diamonds: the rates used."
+	caption := "Rings: the measured animals of the class " + ws.Patient.Class + ". Filled: the rates used, and the patient's kind as it was measured."
 	if m.Class == ws.Patient.Class {
 		marks = append(marks, rateMark{name: at("model: "+modelName(m), m.TemperatureC), mass: m.MassKg, watt: m.RateW})
 	} else {
 		caption += " The model is of another class (" + m.Class + ") and is not shown."
 	}
 	if own, ok := species.MeasuredRate(a); ok && own.Flag == "" {
-		marks = append(marks, rateMark{name: at("measured "+patient, nil), mass: float64(own.Mass), watt: float64(own.Rate)})
+		marks = append(marks, rateMark{name: "as measured: " + patient, mass: float64(own.Mass), watt: float64(own.Rate)})
 	}
 	p := ratePlot(a.Class, linesOfAnimal(a, t, q10), marks)
 	if p == nil {

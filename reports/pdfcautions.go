@@ -50,7 +50,7 @@ func (s *sheet) publishedDoses() {
 	}
 	f := s.f
 	f.heading("Published doses that the case cites")
-	t := pageTable{columns: []tableColumn{{head: "Animal"}, {head: "Kinship"}, {head: "Dose as published"}, {head: "Drafted daily amount against it"}, {head: "Source", grow: 1}}}
+	t := pageTable{columns: []tableColumn{{head: "animal"}, {head: "kinship"}, {head: "dose as published"}, {head: "drafted v. published, a day"}, {head: "source", grow: 1}}}
 	for i := range s.ws.Published {
 		p := &s.ws.Published[i]
 		given := asGiven(p.DoseTyped)
@@ -74,6 +74,7 @@ func (s *sheet) publishedDoses() {
 		}
 		t.rows = append(t.rows, tableRow{cells: cellTexts(animalWords(p.CommonName, p.Species), relationWords(p.Relation), given, ratio, p.Source)})
 	}
+	t.drop(map[int]bool{3: s.ws.Drafted == nil})
 	f.table(t)
 }
 

@@ -99,6 +99,7 @@ func (s *sheet) concentrationTable(single bool) {
 		notes = append(notes, "Above target: part of the interval.")
 	}
 	if len(notes) > 0 {
+		s.f.keepNext()
 		s.f.paragraph(paraStyle{gap: 2}, plain(strings.Join(notes, " ")))
 	}
 }

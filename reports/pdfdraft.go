@@ -1,6 +1,7 @@
 package reports
 
 import (
+	"fmt"
 	"strings"
 
 	"tayra/dose"
@@ -22,6 +23,9 @@ func (s *sheet) draftBox() {
 			f.paragraph(paraStyle{size: sizeDraft, gap: -1}, bold("= "+give))
 		} else if ws.Product != nil {
 			f.paragraph(paraStyle{size: sizeAmount, gap: -1}, bold("How to measure it out: see Syringe and course."))
+		}
+		if sites := s.sitesWords(); sites != "" {
+			f.paragraph(paraStyle{size: sizeAmount, gap: -1}, bold(sites))
 		}
 		perKg := []run{bold(perKgPair(d.DosePerKg, d.Unit))}
 		if daily := dailyPair(d.DailyPerKg, d.Unit); daily != "" {
@@ -74,7 +78,7 @@ func (s *sheet) rangeTable(f *flow) {
 		if r := s.from.VolumeRange90; r != nil {
 			row("by volume", perKgPair(s.from.DosePerKg, d.Unit), "", perKgRange(*r, d.Unit))
 		}
-		amount = "amounts of both ends"
+		amount = "amount, both ends"
 		row(amount, amountPair(d.PerAdministration, d.Unit), "", "")
 	} else {
 		row("dose per kg", perKgPair(d.DosePerKg, d.Unit), perKgRange(d.Range50, d.Unit), perKgRange(d.Range90, d.Unit))
@@ -101,18 +105,32 @@ func (s *sheet) worst(f *flow) {
 		return
 	}
 	var names []string
+	count := map[string]int{}
 	for i := range cs {
-		if cs[i].Level != dose.Note {
+		if cs[i].Level == dose.Note {
+			continue
+		}
+		if count[cs[i].Slug]++; count[cs[i].Slug] == 1 {
 			names = append(names, cs[i].Slug)
 		}
 	}
-	runs := []run{bold(worstWords(s.ws))}
-	n := len(f.bands)
-	f.paragraph(paraStyle{size: sizeHead, gap: 2, indent: indentMark + 2}, runs...)
-	f.bands[n].shapes = append(f.bands[n].shapes, levelShape(cs[0].Level, f.x, sizeHead))
-	if len(names) > 0 {
-		f.paragraph(paraStyle{indent: indentMark + 2, gap: -1}, plain(strings.Join(names, ", ")+"."))
+	for i, n := range names {
+		if count[n] > 1 {
+			names[i] = fmt.Sprintf("%s (%d)", n, count[n])
+		}
 	}
+	worst := "Worst caution: " + levelWord(cs[0].Level)
+	if cs[0].Overridden {
+		worst += ", overridden with a written reason"
+	}
+	n := len(f.bands)
+	f.paragraph(paraStyle{size: sizeHead, gap: 2, indent: indentMark + 2}, bold(worst+"."))
+	f.bands[n].shapes = append(f.bands[n].shapes, levelShape(cs[0].Level, f.x, sizeHead))
+	all := "In all " + countWords(cs)
+	if len(names) > 0 {
+		all += ": " + strings.Join(names, ", ")
+	}
+	f.paragraph(paraStyle{indent: indentMark + 2, gap: -1}, plain(all+"."))
 }
 
 // stopBox stands in the place of the draft and holds no number.
@@ -126,8 +144,13 @@ func (s *sheet) stopBox() {
 		f.bands[n].shapes = append(f.bands[n].shapes, shape{kind: markStop, x: f.x, y: sizeDraft*lineBase - 0.73*sizeDraft/2 - 8, w: 16})
 		f.paragraph(paraStyle{size: sizeAmount, gap: 2}, bold(ws.Drug.Name), plain(", "+patientName(&ws.Patient)))
 		final := false
+		said := map[string]bool{}
 		for _, c := range stops {
 			final = final || dose.CannotOverride(c.Slug)
+			if said[c.Slug] {
+				continue
+			}
+			said[c.Slug] = true
 			f.item(markedItem{mark: markStop, text: []run{bold(c.Slug + ": "), plain(capital(stopWords(c)) + ".")}})
 		}
 		next := "Read the cautions. Whoever goes on writes under overrides in the case file, for each stop by its name, why it does not hold here; the reasons are then printed on every page."

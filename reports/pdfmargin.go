@@ -31,7 +31,7 @@ func shortened(text string, n int) string {
 // head says on every page whose worksheet this is.
 func (s *sheet) head(f *flow, page, pages int) {
 	p := &s.ws.Patient
-	left := []run{bold("Case " + shortened(caseWords(s.ws), headLetters))}
+	left := []run{bold("Worksheet, case " + shortened(caseWords(s.ws), headLetters))}
 	name := animalWords(p.CommonName, p.Species)
 	if p.Name != "" {
 		name = shortened(p.Name, headLetters) + ", " + name
@@ -55,7 +55,7 @@ func (s *sheet) head(f *flow, page, pages int) {
 		about = append(about, p.Species)
 	}
 	second = append(second, plain(", "+strings.Join(about, ", ")))
-	f.split(paraStyle{size: sizeBody, gap: -1}, second, []run{plain("worksheet: draft of a starting dose")})
+	f.paragraph(paraStyle{size: sizeBody, gap: -1}, second...)
 	f.rule(rulerThin)
 }
 
@@ -85,18 +85,24 @@ func (s *sheet) foot(f *flow, page, pages int) {
 		}
 		f.paragraph(paraStyle{size: sizeSmall, gap: -1}, runs...)
 	}
-	var runs []run
-	for i, text := range s.ws.Statements {
-		if i == 0 {
-			runs = append(runs, bold(text))
-		} else {
-			runs = append(runs, plain(" "+text))
-		}
-	}
-	f.paragraph(paraStyle{size: sizeSmall, gap: -1}, runs...)
 	made := s.ws.Program.Name + " " + s.ws.Program.Version
 	if s.ws.Program.Tables != "" {
 		made += ", tables " + s.ws.Program.Tables
 	}
-	f.split(paraStyle{size: sizeSmall, gap: -1}, []run{plain(made)}, []run{plain("record " + s.digest)})
+	// The first statement stands alone; the right edge names program and record.
+	right := []string{made, "record " + s.digest}
+	for i, text := range s.ws.Statements {
+		cell := plain(text)
+		if i == 0 {
+			cell = bold(text)
+		}
+		beside := ""
+		if i < len(right) {
+			beside = right[i]
+		}
+		f.split(paraStyle{size: sizeSmall, gap: -1}, []run{cell}, []run{plain(beside)})
+	}
+	for i := len(s.ws.Statements); i < len(right); i++ {
+		f.split(paraStyle{size: sizeSmall, gap: -1}, nil, []run{plain(right[i])})
+	}
 }

@@ -51,7 +51,7 @@ func (s *sheet) theCase() {
 	add("Condition", condition)
 	add("Food-producing", yes(p.FoodProducing))
 	add("Drug", ws.Drug.Name+": "+drugWords(&ws.Drug))
-	f.pairs(2, pairs...)
+	f.together(func(f *flow) { f.pairs(2, pairs...) })
 }
 
 // plans sets the plans of the model that the draft was taken from side by side,
@@ -67,7 +67,13 @@ func (s *sheet) plans() {
 	if ws.Drafted != nil {
 		f.para(plain("Model: " + modelWords(m) + ". Source: " + m.Source + "."))
 	} else {
-		f.para(plain("Model: " + modelName(m) + ". Source of its dose: " + m.Source + ". After a stop the dose itself is not printed; it stands in the attached case."))
+		where := "After a stop its dose is not printed; it stands in the attached case."
+		for _, c := range activeStops(ws) {
+			if c.Slug == string(dose.SameSpecies) {
+				where = "Its dose stands above, as published."
+			}
+		}
+		f.para(plain("Model: " + modelName(m) + ". Source of its dose: " + m.Source + ". " + where))
 	}
 	if x := ws.DraftedFrom; x.Why != "" && len(ws.Drafts) > 1 {
 		f.para(plain("Chosen among the models as " + x.Why + "."))
@@ -115,7 +121,7 @@ func planTable(m *dose.ModelDraft) pageTable {
 	if m.Kind == "infusion" {
 		amount = "amount per hour"
 	}
-	t := pageTable{columns: []tableColumn{{head: "plan"}, {head: "dose per kg", align: alignDecimal}, {head: amount, align: alignDecimal}, {head: "interval"}, {head: "in a day", align: alignDecimal}, {head: "average against the model's"}}}
+	t := pageTable{columns: []tableColumn{{head: "plan"}, {head: "dose per kg", align: alignDecimal}, {head: amount, align: alignDecimal}, {head: "interval"}, {head: "in a day", align: alignDecimal}, {head: "average v. model's"}}}
 	for i := range m.Plans {
 		q := &m.Plans[i]
 		name, cell := planWords(q.Name), plain
@@ -151,7 +157,7 @@ func (s *sheet) howFarOff() {
 	for i := range m.Parts {
 		q := &m.Parts[i]
 		text := paperText(q.Text)
-		if q.Source != "" {
+		if q.Source != "" && q.Source != "assumed" {
 			text = joinNonEmpty(text, "Source: "+paperText(q.Source), ". ")
 		}
 		t.rows = append(t.rows, tableRow{cells: [][]run{{plain(q.Name)}, {plain(metabolic.Significant(q.SD, 3))}, {plain(text)}}, rule: strings.HasPrefix(q.Name, "together, of mg/kg") || strings.HasPrefix(q.Name, "the larger")})

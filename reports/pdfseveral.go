@@ -13,13 +13,16 @@ func (s *sheet) severalModels() {
 		return
 	}
 	f.heading("Several models")
+	if p := severalPlot(ws); p != nil && ws.Drafted != nil {
+		s.drawn(p, severalHeight(ws), "Bars: the range of the mean over the models, not of the draft, which comes from one of them. Broken line: the mean.")
+	}
 	from := -1
 	if ws.DraftedFrom != nil {
 		from = ws.DraftedFrom.Index
 	}
 	t := pageTable{columns: []tableColumn{{head: "model"}, {head: "mass"}, {head: "kinship"}, {head: "S", align: alignDecimal}}}
 	if ws.Drafted != nil {
-		t.columns = append(t.columns, tableColumn{head: "its own dose"}, tableColumn{head: "gives"}, tableColumn{head: "in a day", align: alignDecimal}, tableColumn{head: "nine times in ten within"})
+		t.columns = append(t.columns, tableColumn{head: "its own dose"}, tableColumn{head: "gives"}, tableColumn{head: "nine times in ten within"})
 	}
 	for i := range ws.Drafts {
 		d := &ws.Drafts[i]
@@ -31,18 +34,17 @@ func (s *sheet) severalModels() {
 		cells := []string{name, massWords(d.MassKg, d.MassLowKg, d.MassHighKg), kin, metabolic.FormatRatio(d.Ratios.Specific)}
 		if ws.Drafted != nil {
 			cells = append(cells, modelRegimen(d))
-			gives, daily := "", ""
+			gives := ""
 			for k := range d.Plans {
 				if p := &d.Plans[k]; p.Name == d.Plan {
 					gives = perKgPair(p.DosePerKg, p.Unit) + " " + intervalWords(p.Name, p.IntervalH)
-					daily = dailyPair(p.DailyPerKg, p.Unit)
 				}
 			}
 			range90 := ""
 			if d.Range90 != nil {
 				range90 = perKgRange(*d.Range90, d.Unit)
 			}
-			cells = append(cells, gives, daily, range90)
+			cells = append(cells, gives, range90)
 		}
 		row := tableRow{}
 		for _, c := range cells {
@@ -58,9 +60,6 @@ func (s *sheet) severalModels() {
 	v := ws.Several
 	if v == nil || ws.Drafted == nil {
 		return
-	}
-	if p := severalPlot(ws); p != nil {
-		s.drawn(p, severalHeight(ws), "")
 	}
 	perDay := func(x float64) string { return dailyWords(x, strings.TrimSuffix(v.Unit, "/day")) }
 	between := func(low, high float64) string { return metabolic.FormatRange(low, high, perDay) }

@@ -72,6 +72,6 @@ func (s *sheet) signature() {
 		f.heading("Signature")
 		f.para(plain("What the veterinarian changed, and why:"))
 		f.ruled(3)
-		f.signatures(3, "Name", "Licence number", "Signature", "Date and time", "Second check: name", "Second check: signature, date and time")
+		f.signatures(3, "Name", "Licence number", "Signature", "Date and time", "Second check: name", "Second check: signature, time")
 	})
 }

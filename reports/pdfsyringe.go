@@ -148,6 +148,23 @@ func (s *sheet) administration(lead string, a *dose.Administration) {
 	}
 }
 
+// sitesWords says on the first page that a volume goes to several places.
+func (s *sheet) sitesWords() string {
+	p := s.ws.Product
+	if p == nil || len(p.Ends) == 0 {
+		return ""
+	}
+	last := p.Ends[len(p.Ends)-1].Sites
+	if len(last) < 2 {
+		return ""
+	}
+	text := "divided over " + countWord(float64(len(last)), "site")
+	if len(p.Ends) > 1 {
+		text += " at the high end"
+	}
+	return text + ": " + siteWords(last)
+}
+
 // siteWords lists the volumes at each site, equal ones counted.
 func siteWords(sites []float64) string {
 	var parts []string

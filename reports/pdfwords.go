@@ -10,8 +10,8 @@ import (
 
 var (
 	powers = regexp.MustCompile(`\^\(?([-−]?[0-9]+(?:\.[0-9]+)?|b)\)?`)
-	// symbols of the method whose second letter is an index
-	indexed = regexp.MustCompile(`\b(Q10|[WBT][0tm])\b`)
+	// symbols of the method whose last letter is an index; σ is no letter to \b
+	indexed = regexp.MustCompile(`\bQ10\b|\b[WBT][0tm]\b|σ[tm]\b`)
 
 	raised = strings.NewReplacer("0", "⁰", "1", "¹", "2", "²", "3", "³", "4", "⁴", "5", "⁵", "6", "⁶", "7", "⁷", "8", "⁸", "9", "⁹",
 		"-", "⁻", "−", "⁻", ".", "·", "b", "ᵇ")
@@ -44,6 +44,6 @@ func paperFormula(s string) string {
 		if x == "Q10" {
 			return lowered.Replace(x)
 		}
-		return x[:1] + lowered.Replace(x[1:])
+		return x[:len(x)-1] + lowered.Replace(x[len(x)-1:])
 	})
 }

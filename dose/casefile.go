@@ -149,6 +149,10 @@ func (r *caseReader) section(path string, n ast.Node, keys []caseKey) {
 	for _, p := range ps {
 		i := slices.IndexFunc(keys, func(k caseKey) bool { return k.name == p.key.Text })
 		if i < 0 {
+			if len(r.faults) > maxFaults {
+				r.fault(p.key.Entry, path, "unknown key", "") // will not be listed
+				continue
+			}
 			problem, remedy := unknownKey(p.key.Text, path, keys)
 			if isFlow(n) && isEmpty(p.value) {
 				remedy = "in braces a comma begins the next key: put a text with a comma in double quotes"
@@ -335,10 +339,10 @@ func (r *caseReader) notKeys(path string, n ast.Node) {
 		return
 	}
 	switch text := string(r.yaml.lines[at.Line-1]); {
-	case gluedColon.MatchString(text):
+	case gluedColon().MatchString(text):
 		r.fault(at, path, "no space after the colon", "write the key, a colon, a space and the value")
 		return
-	case wideColon.MatchString(text):
+	case wideColon().MatchString(text):
 		r.fault(at, path, "the colon is not an ordinary one", "write the key, :, a space and the value")
 		return
 	}

@@ -302,6 +302,7 @@ func TestReadCaseBounds(t *testing.T) {
 		{"4,001 bytes", name(strings.Repeat("x", 4001)), "4001 bytes long"},
 		{"2,001 letters of two bytes", name(strings.Repeat("é", 2001)), "4002 bytes long"},
 		{"a line of 21,000 bytes", "# " + strings.Repeat("x", 21_000) + "\n" + smallCase, "the line has 21002 bytes"},
+		{"30,000 lines", strings.Repeat("#\n", 30_000), "the file has 30000 lines"},
 		{"empty lines", strings.Repeat("\n", 200) + smallCase, "empty lines in a row"},
 		{"tabs", strings.Repeat("#"+strings.Repeat("\t", 999)+"\n", 20) + smallCase, "far more tabs"},
 		{"brackets", strings.Repeat("#"+strings.Repeat("[", 9999)+"\n", 20) + smallCase, "far more tabs or punctuation"},

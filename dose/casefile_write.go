@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"regexp"
 	"strings"
+	"sync"
 	"unicode"
 )
 
@@ -80,28 +81,48 @@ func yamlList(es []Entry) string {
 	return "[" + strings.Join(texts, ", ") + "]"
 }
 
+// The patterns are compiled when first needed: most runs write no case file.
 var (
-	// plainSafe are texts that begin with a letter or a digit and hold no sign
-	// that means anything in YAML, at least not where it stands.
-	plainSafe = regexp.MustCompile(`^[\p{L}\p{N}]([\p{L}\p{M}\p{N} .,;/°±+()'%=_µ–-]*[\p{L}\p{M}\p{N}.;/°±+()'%=_µ–-])?$`)
-
 	// plainWords are words that a reader of YAML 1.1 or 1.2 turns into something
 	// else and would not write back in the same letters.
-	plainWords = regexp.MustCompile(`(?i)^(null|yes|no|on|off|y|n|true|false)$`)
+	plainWords = sync.OnceValue(func() *regexp.Regexp {
+		return regexp.MustCompile(`(?i)^(null|yes|no|on|off|y|n|true|false)$`)
+	})
 
 	// numberLike begins as numbers, dates and times do and has no unit behind it.
-	numberLike = regexp.MustCompile(`(?i)^[0-9][0-9_.,:/exoa-f+-]*$|^[+.-]`)
+	numberLike = sync.OnceValue(func() *regexp.Regexp {
+		return regexp.MustCompile(`(?i)^[0-9][0-9_.,:/exoa-f+-]*$`)
+	})
 
-	// plainNumber are the numbers that any reader writes back in the same letters.
-	plainNumber = regexp.MustCompile(`^(0|[1-9][0-9]{0,14})(\.[0-9]{0,5}[1-9])?$|^[0-9]{4}-[0-9]{2}-[0-9]{2}$`)
+	// plainNumber are the numbers and dates that any reader writes back in the
+	// same letters.
+	plainNumber = sync.OnceValue(func() *regexp.Regexp {
+		return regexp.MustCompile(`^(0|[1-9][0-9]{0,14})(\.[0-9]{0,5}[1-9])?$|^[0-9]{4}-[0-9]{2}-[0-9]{2}$`)
+	})
 )
+
+// plainSafe says whether a text begins and ends with a letter, a digit or a sign
+// that means nothing in YAML there, and holds no other inside.
+func plainSafe(s string) bool {
+	const inside, atEnd = " .,;/°±+()'%=_–-", " ,"
+	for i, r := range s {
+		letter := unicode.IsLetter(r) || unicode.IsNumber(r)
+		switch {
+		case i == 0 && !letter:
+			return false
+		case !letter && !unicode.IsMark(r) && !strings.ContainsRune(inside, r):
+			return false
+		}
+	}
+	return s != "" && strings.IndexByte(atEnd, s[len(s)-1]) < 0
+}
 
 // yamlScalar writes a text plain where that cannot change it, else quoted.
 func yamlScalar(s string) string {
 	switch {
-	case s == "true" || s == "false" || plainNumber.MatchString(s):
+	case s == "true" || s == "false" || plainNumber().MatchString(s):
 		return s
-	case plainSafe.MatchString(s) && !plainWords.MatchString(s) && !numberLike.MatchString(s):
+	case plainSafe(s) && !plainWords().MatchString(s) && !numberLike().MatchString(s):
 		return s
 	}
 	return yamlQuote(s)

@@ -22,6 +22,7 @@ import (
 	"slices"
 	"strconv"
 	"strings"
+	"sync"
 	"unicode"
 	"unicode/utf8"
 
@@ -36,6 +37,7 @@ import (
 const (
 	maxCaseBytes  = 1 << 20
 	maxLineBytes  = 20_000
+	maxLines      = 20_000
 	maxCostly     = 5_000 // tabs and <, each of which may cost the scanner a line
 	maxEmptyLines = 100   // in a row
 	maxMarks      = 100_000
@@ -126,6 +128,9 @@ func (y *yamlText) lookOver(data []byte) (string, *InputError) {
 	raw := bytes.Split(data, []byte("\n"))
 	for i, line := range raw {
 		n := i + 1
+		if n > maxLines {
+			return at(n, 1, fmt.Sprintf("the file has %d lines, and a case file at most %d", len(raw), maxLines), "is it the right file?")
+		}
 		if len(line) > maxLineBytes {
 			return at(n, 1, fmt.Sprintf("the line has %d bytes, and may have %d", len(line), maxLineBytes),
 				"write one key a line")
@@ -210,7 +215,6 @@ func (y *yamlText) checkTokens(tokens token.Tokens) *InputError {
 		if quotedToken(t) && strings.Contains(strings.TrimSpace(t.Origin), "\n") {
 			return y.tokenFault(t, errOpenQuote.Error(), remedyOpenQuote)
 		}
-		run := false
 		switch t.Type {
 		case token.InvalidType:
 			return y.explain(t, t.Error)
@@ -218,7 +222,6 @@ func (y *yamlText) checkTokens(tokens token.Tokens) *InputError {
 			if content {
 				return y.tokenFault(t, secondDocument, secondDocumentRemedy)
 			}
-			content = true
 		case token.DocumentEndType:
 			ended = true
 		case token.MappingStartType, token.SequenceStartType:
@@ -230,13 +233,10 @@ func (y *yamlText) checkTokens(tokens token.Tokens) *InputError {
 			}
 		case token.SequenceEntryType:
 			// Dashes behind one another on a line nest without any indentation.
-			run = before != nil && before.Type == token.SequenceEntryType && before.Position.Line == t.Position.Line
+			if before == nil || before.Type != token.SequenceEntryType || before.Position.Line != t.Position.Line {
+				dashes = 0
+			}
 			dashes++
-		}
-		if !run && t.Type != token.SequenceEntryType {
-			dashes = 0
-		} else if !run {
-			dashes = 1
 		}
 		if len(open) > maxDepth || dashes > maxDepth {
 			return y.tokenFault(t, deepProblem, deepRemedy)
@@ -363,6 +363,10 @@ func (y *yamlText) plainLeaf(t *token.Token) (leaf, *InputError) {
 	if line < 1 || line > len(y.lines) || t.Value == "" {
 		return leaf{}, y.unsure(t)
 	}
+	if len(t.Value) > maxEntryBytes {
+		l, column := y.place(t)
+		return leaf{Entry: Entry{Text: t.Value, Line: l, Column: column}, plain: true}, nil // too long to be used
+	}
 	value := []rune(t.Value)
 	// The library is laxer than YAML here, and other readers would see other texts.
 	first := value[0]
@@ -388,19 +392,26 @@ func (y *yamlText) plainLeaf(t *token.Token) (leaf, *InputError) {
 
 // glued says whether something stands right behind the colon of a plain key.
 func (y *yamlText) glued(key leaf) bool {
-	rest := y.lines[key.Line-1][key.Column-1+utf8.RuneCountInString(key.Text):]
+	line := y.lines[key.Line-1]
+	rest := line[min(len(line), key.Column-1+utf8.RuneCountInString(key.Text)):]
 	i := slices.Index(rest, ':')
 	return i >= 0 && i+1 < len(rest) && !strings.ContainsRune(" \t,]}", rest[i+1])
 }
 
 // nearest is the column of the line nearest to the one given at which ok holds
-// and where a text can begin.
+// and where a text can begin. The library is wrong by the number of tabs before
+// the place, or of spaces at the line's end, so a few tries must do.
 func (y *yamlText) nearest(line, column int, ok func(c int) bool) (int, bool) {
 	text := y.lines[line-1]
+	tries := 64
 	begins := func(c int) bool {
-		return c >= 1 && c <= len(text) && (c == 1 || strings.ContainsRune(" \t{[,:", text[c-2])) && ok(c)
+		if c < 1 || c > len(text) || c > 1 && !strings.ContainsRune(" \t{[,:", text[c-2]) {
+			return false
+		}
+		tries--
+		return ok(c)
 	}
-	for off := 0; off <= len(text); off++ {
+	for off := 0; off <= len(text) && tries > 0; off++ {
 		if begins(column + off) {
 			return column + off, true
 		}
@@ -412,45 +423,52 @@ func (y *yamlText) nearest(line, column int, ok func(c int) bool) (int, bool) {
 }
 
 // plainAt says whether exactly this plain text stands at a place, from its
-// first letter to its end. A space of it may be a line's end in the file.
+// first letter to its end. A space of it may be a line's end in the file, and
+// so may a newline of it with the empty lines that follow.
 func (y *yamlText) plainAt(line, column int, value []rune, flow bool) bool {
 	l, c := line-1, column-1
-	blank := func() bool { return strings.TrimSpace(string(y.lines[l][c:])) == "" }
+	end := y.contentEnd(l)
 	for i := 0; i < len(value); {
 		if value[i] == '#' && i > 0 && strings.ContainsRune(" \t\n", value[i-1]) {
 			return false // a comment that the library took for text
 		}
-		if c < len(y.lines[l]) && y.lines[l][c] == value[i] && (value[i] != ' ' || !blank()) {
+		if c < end {
+			if y.lines[l][c] != value[i] {
+				return false
+			}
 			i, c = i+1, c+1
 			continue
 		}
-		if (value[i] != ' ' && value[i] != '\n') || !blank() {
-			return false
-		}
 		breaks := 0
-		for l++; l < len(y.lines); l++ {
+		for c >= end {
+			if l++; l >= len(y.lines) {
+				return false
+			}
 			breaks++
-			c = len(y.lines[l]) - len([]rune(strings.TrimLeft(string(y.lines[l]), " ")))
-			if c < len(y.lines[l]) {
-				break
+			c, end = y.indent(l+1), y.contentEnd(l)
+		}
+		// One break is a space, and n of them are n-1 newlines.
+		folded := " "
+		if breaks > 1 {
+			folded = strings.Repeat("\n", breaks-1)
+		}
+		for _, r := range folded {
+			if i >= len(value) || value[i] != r {
+				return false
 			}
-		}
-		if l >= len(y.lines) {
-			return false
-		}
-		if value[i] == ' ' {
 			i++
-			breaks--
-		} else {
-			for breaks--; i < len(value) && value[i] == '\n'; i++ {
-				breaks--
-			}
-		}
-		if breaks != 0 {
-			return false
 		}
 	}
 	return y.endsAt(l, c, flow)
+}
+
+// contentEnd is the length of a line without the spaces and tabs at its end.
+func (y *yamlText) contentEnd(l int) int {
+	n := len(y.lines[l])
+	for n > 0 && (y.lines[l][n-1] == ' ' || y.lines[l][n-1] == '\t') {
+		n--
+	}
+	return n
 }
 
 // endsAt says whether a text can end before this place: only space, a comment,
@@ -594,10 +612,18 @@ func (y *yamlText) syntax(err error) *InputError {
 	return &InputError{File: y.file, Problem: "the file is not valid YAML", Remedy: "see `tayra new` for a file to start from"}
 }
 
+// Slips that a line shows by itself. Compiled when first needed: a good file
+// needs none.
 var (
-	gluedColon = regexp.MustCompile(`^[ -]*([A-Za-z_0-9]+):([^ \t\r\n/].*)$`)
-	wideColon  = regexp.MustCompile(`^[ -]*[A-Za-z_0-9]+ *[：﹕꞉∶]`)
-	twoColons  = regexp.MustCompile(`^[ -]*([A-Za-z_0-9]+):[ \t]+([^"'#{[][^"'#]*:[ \t].*|[^"'#{[][^"'#]*:|:[ \t].*)$`)
+	gluedColon = sync.OnceValue(func() *regexp.Regexp {
+		return regexp.MustCompile(`^[ -]*([A-Za-z_0-9]+):([^ \t\r\n/].*)$`)
+	})
+	wideColon = sync.OnceValue(func() *regexp.Regexp {
+		return regexp.MustCompile(`^[ -]*[A-Za-z_0-9]+ *[：﹕꞉∶]`)
+	})
+	twoColons = sync.OnceValue(func() *regexp.Regexp {
+		return regexp.MustCompile(`^[ -]*([A-Za-z_0-9]+):[ \t]+([^"'#{[][^"'#]*:[ \t].*|[^"'#{[][^"'#]*:|:[ \t].*)$`)
+	})
 )
 
 // explain finds the likely slip behind a syntax error. The library says where
@@ -614,11 +640,11 @@ func (y *yamlText) explain(t *token.Token, message string) *InputError {
 	}
 	for n := max(1, line-1); n <= last; n++ {
 		text := string(y.lines[n-1])
-		if m := gluedColon.FindStringSubmatchIndex(text); m != nil && strings.IndexByte(text, '"') < 0 {
+		if m := gluedColon().FindStringSubmatchIndex(text); m != nil && strings.IndexByte(text, '"') < 0 {
 			line, column = n, utf8.RuneCountInString(text[:m[3]])+1
 			return fault("no space after the colon", fmt.Sprintf("write %s: and a space before the value", text[m[2]:m[3]]))
 		}
-		if wideColon.MatchString(text) {
+		if wideColon().MatchString(text) {
 			line, column = n, 1
 			return fault("the colon is not an ordinary one", "write : and a space")
 		}
@@ -657,7 +683,7 @@ func (y *yamlText) explain(t *token.Token, message string) *InputError {
 		}
 		return fault("a bracket opened here is not closed", "close it, or put the value in double quotes if the bracket is part of the text")
 	}
-	if m := twoColons.FindStringSubmatch(text); m != nil {
+	if m := twoColons().FindStringSubmatch(text); m != nil {
 		if isSectionName(m[1]) {
 			return fault("a key behind another key", "write the keys of "+m[1]+" below it, each on a line of its own behind two spaces")
 		}

@@ -16,7 +16,8 @@ func completionCommand() *cobra.Command {
 		Use:   "completion SHELL",
 		Short: "Print the completion script of a shell",
 		Long: `Print the script by which a shell completes commands, flags and the names of
-animals. SHELL is bash, zsh, fish or powershell.
+animals. SHELL is bash, zsh, fish or powershell; bash needs its package
+bash-completion.
 
 bash:        source <(tayra completion bash)
 zsh:         tayra completion zsh > "${fpath[1]}/_tayra"

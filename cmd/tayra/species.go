@@ -89,7 +89,11 @@ func animalFault(what string, err error) error {
 		problem, _, _ := strings.Cut(several.Error(), "; ")
 		return &usageError{what, problem, "write which"}
 	}
-	return &usageError{what, err.Error(), "retype the name"}
+	problem, remedy, ok := strings.Cut(err.Error(), "; ")
+	if !ok {
+		remedy = "retype the name"
+	}
+	return &usageError{what, problem, remedy}
 }
 
 // animalsText lists animals family by family, in the order in which the

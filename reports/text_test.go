@@ -248,7 +248,11 @@ func TestTextIsWhole(t *testing.T) {
 func TestHostileTexts(t *testing.T) {
 	evil := "x\x1b[2J\n┏━ THE DRAFT\u202e\u2066 5 mg\r\b\u200b\xff"
 	for _, name := range []string{"severalmodels", "check", "override", "stop", "range"} {
-		ws := exampleNamed(t, name)
+		// A copy, by way of its record: a worksheet shares its statements with others.
+		ws, err := ReadRecord(recordOf(t, exampleNamed(t, name)))
+		if err != nil {
+			t.Fatal(err)
+		}
 		spoil(reflect.ValueOf(ws).Elem(), evil)
 		for _, o := range []TextOptions{{Steps: true}, {Colour: true, Steps: true}} {
 			text := string(Text(ws, o))
@@ -296,6 +300,50 @@ func TestEmptyWorksheet(t *testing.T) {
 		{Drafts: []dose.ModelDraft{{}}, DraftedFrom: &dose.DraftedFrom{}, Bases: make([]dose.BasisLine, 1), Drafted: &dose.Drafted{}, Product: &dose.ProductRecord{Ends: make([]dose.Administration, 2)}, Curves: make([]dose.Curve, 2), Loading: &dose.Loading{}}} {
 		if len(Text(ws, TextOptions{Steps: true})) == 0 {
 			t.Error("nothing")
+		}
+	}
+}
+
+// What no example reaches, set into one that comes near.
+func TestCorners(t *testing.T) {
+	hours := func(h float64) *float64 { return &h }
+	for _, k := range []struct {
+		example string
+		do      func(ws *dose.Worksheet)
+		want    []string
+	}{
+		{"anteater", func(ws *dose.Worksheet) { ws.Drafted.Route = ""; ws.Drafts[0].Route = "" }, []string{"examplicillin 334 mg every 12 hours", "No route is given."}},
+		{"anteater", func(ws *dose.Worksheet) { ws.Drug.Extraction, ws.Drug.Controlled = "low", true }, []string{"low extraction", "CONTROLLED"}},
+		{"anteater", func(ws *dose.Worksheet) { ws.Drafted.ChosenBy = "case" }, []string{"Drafted: same interval, named in the case."}},
+		{"anteater", func(ws *dose.Worksheet) { ws.Cautions = nil }, []string{"CAUTIONS: none raised, which is no evidence of safety", "Cautions: none raised, which is no evidence of safety."}},
+		{"anteater", func(ws *dose.Worksheet) {
+			ws.Product.Ends[0] = dose.Administration{AmountAsked: 0.001, Unit: "mg", Measure: "mL", Exact: 0.00002, BelowStep: true}
+		}, []string{"How to measure it out: see SYRINGE AND COURSE.", "1 mcg is exactly 0.00002 mL: under one step, and no usual dilution can be measured either."}},
+		{"infusion", func(ws *dose.Worksheet) {
+			ws.Product.Pump[0] = dose.Pump{ExactMLPerH: 0.04, BelowStep: true, DiluteTo: 0.1, DilutePartIn: 10, TotalML: 1.2, Containers: 2}
+		}, []string{"Exactly 0.04 mL/h, under one step of the pump. Dilute 1 in 10, to 0.1 mg/mL.", "Over 1 day: 1.2 mL of the product, 2 containers."}},
+		{"anteater", func(ws *dose.Worksheet) {
+			ws.Published = []dose.PublishedDose{
+				{CommonName: "southern tamandua", DoseTyped: ".5-1.0 g", Unit: "mg/kg", Relation: "order", Source: "a", IntervalH: hours(72)},
+				{Species: "Ara ararauna", DosePerKg: &dose.Pair{2, 2}, Unit: "mg/kg/h", Relation: "other class", Source: "b", Route: "IV"},
+				{CommonName: "brown-throated sloth", DosePerKg: &dose.Pair{2, 3}, Unit: "IU/kg", Relation: "", Source: "c"},
+			}
+		}, []string{"southern tamandua (same order): 0.5 to 1 g every 72 hours (3 days)", "Ara ararauna (of another class): 2 mg/kg/h IV continuous infusion", "brown-throated sloth: 2 to 3 units/kg once"}},
+		{"anteater", func(ws *dose.Worksheet) { ws.Loading = &dose.Loading{Unit: "mg/kg", Text: "none is drafted"} }, []string{"examplicillin 334 mg SC"}},
+		{"anteater", func(ws *dose.Worksheet) { ws.Sources[0].Memory = true }, []string{"invented for this example (from memory)"}},
+		{"severalmodels", func(ws *dose.Worksheet) { ws.Drafts[1].Kinship = "" }, []string{"none"}},
+		{"check", func(ws *dose.Worksheet) {
+			ws.Proposed.IntervalH, ws.Proposed.Ratios.Interval, ws.Proposed.RaisesStop = nil, 0, true
+		}, []string{"DIFFERS from the draft, and raises a STOP", "not compared"}},
+		{"check", func(ws *dose.Worksheet) { ws.Proposed.Differs = false }, []string{"PROPOSED REGIMEN: does not differ from the draft"}},
+	} {
+		ws := exampleNamed(t, k.example)
+		k.do(ws)
+		text := oneLine(strings.ReplaceAll(string(Text(ws, TextOptions{Steps: true})), "┃", " "))
+		for _, want := range k.want {
+			if !strings.Contains(text, want) {
+				t.Errorf("%s: no %q", k.example, want)
+			}
 		}
 	}
 }
@@ -390,8 +438,8 @@ func TestAlignFiguresLaws(t *testing.T) {
 			if strings.TrimLeft(got[i], " ") != cells[i] {
 				t.Fatalf("%q became %q", cells[i], got[i])
 			}
-			at := strings.IndexAny(got[i], ". ") // no point: where the first number ends
-			at = strings.IndexFunc(strings.TrimLeft(got[i], " "), func(r rune) bool { return r == '.' || r == ' ' }) + len(got[i]) - len(cells[i])
+			// The point, or where the first number ends.
+			at := strings.IndexFunc(strings.TrimLeft(got[i], " "), func(r rune) bool { return r == '.' || r == ' ' }) + len(got[i]) - len(cells[i])
 			if point >= 0 && at != point {
 				t.Fatalf("points at %d and %d: %q", point, at, got)
 			}
@@ -483,7 +531,7 @@ func TestStripAxis(t *testing.T) {
 }
 
 func TestFitText(t *testing.T) {
-	table := "species,mass (kg),clearance (mL/min),volume (L)\nrat,0.25,2,0.1\nrabbit,3,12,1.1\ndog,10,30,3.5\nhorse,500,600,160\n"
+	table := "species,mass (kg),clearance (mL/min),volume (L)\nrabbit,3,12,1.1\ndog,10,30,3.5\nsheep,20,55,8\n"
 	in, err := dose.ReadFitTable("drug.csv", []byte(table))
 	if err != nil {
 		t.Fatal(err)
@@ -512,7 +560,7 @@ models:
 	alone := oneLine(string(FitText(f, TextOptions{})))
 	number := func(v float64) string { return metabolic.Significant(v, 3) + " L/h" }
 	for _, want := range []string{
-		"over 4 animals", "b = " + metabolic.FormatRatio(f.B), number(f.AtTarget.Value), metabolic.Significant(f.AtTarget.PI95[0], 3) + " to " + number(f.AtTarget.PI95[1]),
+		"over 3 animals", "b = " + metabolic.FormatRatio(f.B), number(f.AtTarget.Value), metabolic.Significant(f.AtTarget.PI95[0], 3) + " to " + number(f.AtTarget.PI95[1]),
 		"LINE FITTED TO DATA: VOLUME", "rabbit 3 kg", fmt.Sprintf("b = %s", metabolic.FormatRatio(f.Fixed.Exponent)),
 	} {
 		if !strings.Contains(sheet, want) {
@@ -521,6 +569,9 @@ models:
 		if !strings.Contains(alone, want) {
 			t.Errorf("no %q in the text of the fit", want)
 		}
+	}
+	if len(f.Cautions) < 2 {
+		t.Errorf("%d cautions: the test shows nothing of them", len(f.Cautions))
 	}
 	for _, c := range f.Cautions {
 		if !strings.Contains(alone, oneLine(c.Text)) {

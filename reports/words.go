@@ -79,9 +79,6 @@ func amountRange(r dose.DoseRange, unit string) string {
 	return amountPair(dose.Pair{r.Low, r.High}, unit)
 }
 
-// isRange says whether a pair prints as two values.
-func isRange(p dose.Pair, unit string) bool { return perKgWords(p[0], unit) != perKgWords(p[1], unit) }
-
 // intervalOf gives back the interval that a kind of regimen and its hours name.
 func intervalOf(kind string, hours *float64) metabolic.Interval {
 	switch {

@@ -33,18 +33,20 @@ const (
 var PracticalIntervals = []metabolic.Hours{6, 8, 12, 24, 48, 72, 96, 120, 168, 240, 336, 504, 672, 720}
 
 // nearestInterval is the practical interval, or the model's own, that is
-// nearest to want on a log scale and not longer than limit. A tie, to 1e-9 of
-// the log, takes the shorter.
+// nearest to want on a log scale and not longer than limit: the one whose ratio
+// to want, larger over smaller, is least. A tie, to 1e-9 of the log, takes the
+// shorter.
 func nearestInterval(want, own, limit float64, practical []metabolic.Hours) float64 {
-	best, off := own, math.Abs(math.Log(own/want))
+	const tie = 1e-9
+	best, off := own, math.Max(own/want, want/own)
 	for _, h := range practical {
 		h := float64(h)
 		if h > limit*(1+1e-12) {
 			continue
 		}
-		d := math.Abs(math.Log(h / want))
-		if d < off-1e-9 || (d < off+1e-9 && h < best) {
-			best, off = h, d
+		ratio := math.Max(h/want, want/h)
+		if ratio < off*(1-tie) || (ratio < off*(1+tie) && h < best) {
+			best, off = h, ratio
 		}
 	}
 	return best

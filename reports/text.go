@@ -170,12 +170,16 @@ func (t *terminal) draftBox(ws *dose.Worksheet) {
 		}
 		t.text(0, "From "+modelWords(m)+"."+route)
 	}
-	if l := ws.Loading; l != nil && l.DosePerKg != nil && l.PerAdministration != nil {
-		s := "Loading dose, once, first: " + amountPair(*l.PerAdministration, l.Unit) + " (" + perKgPair(*l.DosePerKg, l.Unit) + ")"
-		if l.Range90 != nil {
-			s += "; nine times in ten " + perKgRange(*l.Range90, l.Unit)
+	if l := ws.Loading; l != nil {
+		s := "No loading dose. "
+		if l.DosePerKg != nil && l.PerAdministration != nil {
+			s = "Loading dose, once, first: " + amountPair(*l.PerAdministration, l.Unit) + " (" + perKgPair(*l.DosePerKg, l.Unit) + ")"
+			if l.Range90 != nil {
+				s += "; nine times in ten " + perKgRange(*l.Range90, l.Unit)
+			}
+			s += ". "
 		}
-		t.text(0, s+".")
+		t.text(0, s+l.Text)
 	}
 	t.blank()
 	tb := &table{head: []string{"", "per kg", "amount"}}

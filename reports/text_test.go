@@ -240,6 +240,9 @@ func TestTextIsWhole(t *testing.T) {
 			want("the verdict", p.Verdict[0])
 		}
 		want("the note on curves", e.ws.CurvesNote)
+		if e.ws.Loading != nil {
+			want("what a loading dose follows", e.ws.Loading.Text)
+		}
 	}
 }
 
@@ -329,7 +332,7 @@ func TestCorners(t *testing.T) {
 				{CommonName: "brown-throated sloth", DosePerKg: &dose.Pair{2, 3}, Unit: "IU/kg", Relation: "", Source: "c"},
 			}
 		}, []string{"southern tamandua (same order): 0.5 to 1 g every 72 hours (3 days)", "Ara ararauna (of another class): 2 mg/kg/h IV continuous infusion", "brown-throated sloth: 2 to 3 units/kg once"}},
-		{"anteater", func(ws *dose.Worksheet) { ws.Loading = &dose.Loading{Unit: "mg/kg", Text: "none is drafted"} }, []string{"examplicillin 334 mg SC"}},
+		{"anteater", func(ws *dose.Worksheet) { ws.Loading = &dose.Loading{Unit: "mg/kg", Text: "none is drafted"} }, []string{"No loading dose. none is drafted"}},
 		{"anteater", func(ws *dose.Worksheet) { ws.Sources[0].Memory = true }, []string{"invented for this example (from memory)"}},
 		{"severalmodels", func(ws *dose.Worksheet) { ws.Drafts[1].Kinship = "" }, []string{"none"}},
 		{"check", func(ws *dose.Worksheet) {

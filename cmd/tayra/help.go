@@ -9,6 +9,9 @@ import (
 	"github.com/spf13/pflag"
 )
 
+// runsOn is the annotation of a command that runs until it is interrupted.
+const runsOn = "runs on"
+
 // helpWidth is the width of every help text.
 const helpWidth = 80
 

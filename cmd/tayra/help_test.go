@@ -64,6 +64,12 @@ func TestExamplesRun(t *testing.T) {
 				write(t, folder, "case.yaml", template)
 			}
 			write(t, folder, "check.yaml", proposing)
+			if c.Annotations[runsOn] != "" {
+				for line := range strings.SplitSeq(c.Example, "\n") {
+					interrupt(t, folder, line)
+				}
+				return
+			}
 			shell := exec.Command("sh", "-e", "-c", c.Example)
 			shell.Dir = folder
 			out, err := shell.CombinedOutput()
@@ -74,6 +80,37 @@ func TestExamplesRun(t *testing.T) {
 				t.Error("the examples print nothing")
 			}
 		})
+	}
+}
+
+// interrupt starts a command that runs on until it is stopped, waits until it
+// has said where it is, and stops it as Ctrl-C does. Nothing that it might open
+// is within its reach.
+func interrupt(t *testing.T, folder, line string) {
+	t.Helper()
+	tayra, err := exec.LookPath("tayra")
+	if err != nil {
+		t.Fatal(err)
+	}
+	shell := exec.Command("/bin/sh", "-c", "exec "+line)
+	shell.Dir = folder
+	shell.Env = []string{"PATH=" + filepath.Dir(tayra)}
+	out, err := shell.StdoutPipe()
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := shell.Start(); err != nil {
+		t.Fatal(err)
+	}
+	first := make([]byte, 1)
+	if _, err := out.Read(first); err != nil {
+		t.Errorf("%s says nothing: %v", line, err)
+	}
+	if err := shell.Process.Signal(os.Interrupt); err != nil {
+		t.Error(err)
+	}
+	if err := shell.Wait(); err != nil {
+		t.Errorf("%s: %v", line, err)
 	}
 }
 

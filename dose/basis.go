@@ -1,6 +1,7 @@
 package dose
 
 import (
+	"errors"
 	"fmt"
 	"math"
 	"strings"
@@ -42,9 +43,30 @@ const measuredExponent = 0.75
 type noBasis struct {
 	basis Basis
 	why   string
+	cause error
 }
 
+// Unwrap gives what package species said.
+func (e *noBasis) Unwrap() error { return e.cause }
+
 func (e *noBasis) Error() string { return e.basis.String() + ": " + e.why }
+
+// reason is why a basis is not there, without its name and with the animal's
+// where one of two is to blame.
+func reason(err error) string {
+	var nb *noBasis
+	if !errors.As(err, &nb) {
+		return err.Error()
+	}
+	who, _, _ := strings.Cut(err.Error(), nb.Error())
+	why := nb.why
+	// A reason that names the basis again, as package species gives it.
+	var u *species.UnavailableError
+	if errors.As(nb.cause, &u) {
+		why = u.Why
+	}
+	return who + why
+}
 
 // beyondMeasured is a mass too far from the one at which a rate was measured.
 // It is put into words only when it is printed: most cases ask for every basis
@@ -113,7 +135,7 @@ func lines(a *species.Animal) *animalLines {
 	if l, ok := linesOf.Load(a.Name); ok {
 		return l.(*animalLines)
 	}
-	l := &animalLines{animal: a, unmeasured: &noBasis{BasisMeasured, "its rate is not in the measured table"}}
+	l := &animalLines{animal: a, unmeasured: &noBasis{basis: BasisMeasured, why: "its rate is not in the measured table"}}
 	if eq, ok := metabolic.GroupConstant(a.Group); ok {
 		l.group = equationLine(BasisGroup, eq, a)
 	}
@@ -122,7 +144,7 @@ func lines(a *species.Animal) *animalLines {
 	}
 	if m, ok := species.MeasuredRate(a); ok {
 		if m.Flag != "" {
-			l.unmeasured = &noBasis{BasisMeasured, "the measured animal is marked " + m.Flag}
+			l.unmeasured = &noBasis{basis: BasisMeasured, why: "the measured animal is marked " + m.Flag}
 		} else {
 			kind := m.Kind
 			if m.Grade == "not basal" {
@@ -167,9 +189,9 @@ type rate struct {
 	watt  float64
 	sd    float64 // standard deviation of ln about the truth, as far as the basis knows
 	t0    metabolic.Celsius
-	hasT0 bool    // the rate was moved by Q10 from t0
-	q10   float64 // the factor Q10^((T−T0)/10), 1 when not moved
-	pred  *species.Prediction
+	hasT0 bool                // the rate was moved by Q10 from t0
+	q10   float64             // the factor Q10^((T−T0)/10), 1 when not moved
+	pred  *species.Prediction // by relatives: on whom it leans
 }
 
 // at is the line's rate at a mass and, for ectotherms, a temperature.
@@ -179,7 +201,7 @@ func (l *rateLine) at(m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate,
 	case l.equation != nil:
 		w, err := l.equation.Rate(m, t, q10)
 		if err != nil {
-			return r, &noBasis{l.basis, err.Error()}
+			return r, &noBasis{basis: l.basis, why: err.Error(), cause: err}
 		}
 		r.watt, r.sd = float64(w), l.scatter.SDln
 		if !l.animal.Endotherm() && !l.equation.HasTemperatureTerm() && l.equation.HasT0 {
@@ -188,29 +210,34 @@ func (l *rateLine) at(m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate,
 		}
 	case l.measured != nil:
 		w0 := l.measured.Mass
-		if m < w0/measuredReach || m > w0*measuredReach {
+		if !l.reaches(m) {
 			return r, &beyondMeasured{w0, m}
 		}
 		r.watt = float64(l.measured.Rate) * math.Pow(float64(m/w0), measuredExponent)
 		if !l.animal.Endotherm() {
 			if !l.measured.HasTemperature {
-				return r, &noBasis{BasisMeasured, "measured at a body temperature that the table does not give"}
+				return r, &noBasis{basis: BasisMeasured, why: "measured at a body temperature that the table does not give"}
 			}
 			r.t0, r.hasT0 = l.measured.Temperature, true
 			r.q10 = metabolic.Q10Factor(q10, t, l.measured.Temperature)
 			r.watt *= r.q10
 		}
 	default:
-		p, err := l.relatives.At(m, t)
+		w, sd, err := l.relatives.Rate(m, t)
 		if err != nil {
-			return r, &noBasis{BasisRelatives, err.Error()}
+			return r, &noBasis{basis: BasisRelatives, why: err.Error(), cause: err}
 		}
-		r.watt, r.sd, r.pred = float64(p.Rate), p.SDln, p
+		r.watt, r.sd, r.pred = float64(w), sd, l.relatives.Kin()
 	}
 	if !(r.watt > 0) || math.IsInf(r.watt, 0) {
-		return r, &noBasis{l.basis, "gives no positive rate here"}
+		return r, &noBasis{basis: l.basis, why: "gives no positive rate here"}
 	}
 	return r, nil
+}
+
+// reaches says whether a measured rate is carried to a mass.
+func (l *rateLine) reaches(m metabolic.Mass) bool {
+	return m >= l.measured.Mass/measuredReach && m <= l.measured.Mass*measuredReach
 }
 
 // massLimits are the measured masses behind the line; ok is false where the
@@ -251,7 +278,7 @@ func (l *animalLines) on(b Basis, eq *metabolic.Equation, m metabolic.Mass, t me
 		if l.class != nil {
 			return l.class.at(m, t, q10)
 		}
-		return rate{}, &noBasis{b, fmt.Sprintf("no group constant for a %s, no rate measured near this mass and no published line", a.Group)}
+		return rate{}, &noBasis{basis: b, why: fmt.Sprintf("no group constant for a %s, no rate measured near this mass and no published line", a.Group)}
 	case BasisEquation:
 		if eq != nil && eq.Applies(a.Group, a.Name) {
 			return equationLine(BasisEquation, eq, a).at(m, t, q10)
@@ -259,7 +286,7 @@ func (l *animalLines) on(b Basis, eq *metabolic.Equation, m metabolic.Mass, t me
 		if l.class != nil {
 			return l.class.at(m, t, q10)
 		}
-		return rate{}, &noBasis{b, fmt.Sprintf("no published line for a %s", a.Group)}
+		return rate{}, &noBasis{basis: b, why: fmt.Sprintf("no published line for a %s", a.Group)}
 	case BasisMeasured:
 		if l.measured == nil {
 			return rate{}, l.unmeasured

@@ -118,7 +118,7 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 	case PublishedExists:
 		*t = fmt.Sprintf("The case cites a published dose for %s: it outranks this draft. See the published doses.", patient)
 		if r.a == 0 {
-			*t = fmt.Sprintf("The case cites a published dose for a relative (%s): weigh it before this draft.", r.detail)
+			*t = fmt.Sprintf("The case cites a published dose for a relative (%s): weigh it before this draft.", commonName(r.detail))
 		}
 	case FoodAnimal:
 		if r.a == 1 {
@@ -137,7 +137,12 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 	case PatientCondition:
 		*t = conditionText(r.detail)
 	case RoundingError:
-		*t = fmt.Sprintf("Rounding to the device's step changes the dose by %s %%.", num("error_percent", r.a))
+		verb := "raises"
+		if r.a < 0 {
+			verb = "lowers"
+		}
+		*t = fmt.Sprintf("Rounding to the device's step %s the dose by %s %%.", verb, metabolic.Significant(math.Abs(r.a), 3))
+		out.Numbers["error_percent"] = r.a
 	case EstimatedMass:
 		*t = fmt.Sprintf("The mass of the %s is estimated: %s to %s. Weigh the animal if it can be weighed.", who, kg("low", r.a), kg("high", r.b))
 	case OneModel:
@@ -294,6 +299,14 @@ func massSource(c *Case, model int) string {
 		return "adult mass range: " + s
 	}
 	return "adult mass range: " + a.AdultBasis
+}
+
+// commonName is the name by which a text calls an animal of the table.
+func commonName(scientific string) string {
+	if a, err := species.Find(scientific); err == nil {
+		return animalWords(a)
+	}
+	return scientific
 }
 
 // roundedMass is a mass to 4 figures: the middle of an estimate carries no more.

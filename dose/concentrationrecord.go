@@ -102,7 +102,7 @@ func (n *numbers) concentrations(c *Case, w *Worksheet) {
 	}
 	note += " as in the model: assumed. A single drug's half-life misses this rule by a factor of 3."
 	if m.VolumePerKg == 0 {
-		note += " No volume of distribution is given: concentrations are in units of the model's average."
+		note += " No volume of distribution is given: concentrations are " + unit + "."
 		if c.Target != nil {
 			note += " The time above the target cannot be said."
 		}
@@ -194,6 +194,11 @@ func (n *numbers) proposedRecord(c *Case, drafted, proposed *Curve) *Proposed {
 	return out
 }
 
+// intervalWords is an interval in words: every 12 hours.
+func intervalWords(h float64) string {
+	return metabolic.FormatInterval(metabolic.Interval{Kind: metabolic.Repeated, Hours: metabolic.Hours(h)})
+}
+
 // raiseProposed finds the cautions that a proposed regimen raises of itself,
 // against the model that the draft was taken from.
 func raiseProposed(c *Case, n *numbers) {
@@ -253,7 +258,7 @@ func (n *numbers) judge(c *Case, out *Proposed, daily, draftedDaily float64) {
 			say("The proposed regimen is a single dose; the drafted one is repeated.")
 		case math.Abs(*out.IntervalH-p.interval) > 1e-9*p.interval:
 			out.Differs = true
-			say("The proposed interval is %s, the drafted one %s.", hoursWords(*out.IntervalH), hoursWords(p.interval))
+			say("Proposed is %s, drafted %s.", intervalWords(*out.IntervalH), intervalWords(p.interval))
 		default:
 			say("The interval is the drafted one.")
 		}

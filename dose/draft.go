@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"tayra/metabolic"
@@ -31,8 +32,8 @@ func Draft(c *Case) (*Worksheet, error) {
 		Input:       c.Input,
 		Drug:        drugRecord(c, &n),
 		Overrides:   map[string]string{},
-		TrackRecord: trackRecord,
-		Statements:  statements,
+		TrackRecord: slices.Clone(trackRecord),
+		Statements:  slices.Clone(statements),
 	}
 	w.Patient = patientRecord(c, &n)
 	for i := range c.Models {
@@ -453,6 +454,8 @@ func (n *numbers) planReason(c *Case, i int) string {
 		return "a depot form: no interval is scaled"
 	case mn.s >= 1:
 		return "S is " + s + ", 1 or above: the daily amount is kept at S times the model's and the interval goes to the nearest practical one"
+	case c.Drug.Activity == ConcentrationDependent && mn.plan().interval == float64(c.Models[i].Regimen.Interval.Hours):
+		return "S is " + s + ", below 1, and the drug's effect follows its concentration: the interval might be longer, but the nearest practical one is the model's own"
 	case c.Drug.Activity == ConcentrationDependent:
 		return "S is " + s + ", below 1, and the drug's effect follows its concentration: a longer interval, never beyond twice the model's"
 	}
@@ -466,19 +469,24 @@ func (n *numbers) meaning(c *Case, i int) string {
 	f := func(x float64) string {
 		return metabolic.FormatDosePerKg(x, u.Unit, u.Interval.Kind == metabolic.Infusion)
 	}
-	name, text, _ := mn.spread.record.text()
+	record := mn.spread.record.short()
 	if n.fit != nil && i == n.from {
-		name, text = "of the table alone", fmt.Sprintf("prediction interval of the line fitted to %d animals", n.fit.record.N)
+		record = fmt.Sprintf("the prediction interval of the line fitted to %d animals", n.fit.record.N)
 	}
 	level := "average blood level"
+	if p := mn.plan(); p.name == PlanBothAdjusted {
+		level = metabolic.Significant(p.average, 3) + " times the model's average blood level"
+	} else {
+		level = "the model's " + level
+	}
 	at := ""
 	if mn.plan().name == PlanOnce {
-		level = "area under the curve"
+		level = "the model's area under the curve"
 	} else if mn.plan().interval > 0 {
 		at = ", at this interval,"
 	}
-	return fmt.Sprintf("If this animal is otherwise like the model, the dose that gives the model's %s%s is as likely as not between %s and %s, and nine times in ten between %s and %s, judged from the record %s (%s). An equal blood level is not an equal effect, nor safety. This is not a range to choose from.",
-		level, at, f(mn.range50.Low), f(mn.range50.High), f(mn.range90.Low), f(mn.range90.High), name, text)
+	return fmt.Sprintf("If this animal is otherwise like the model, the dose that gives %s%s is as likely as not between %s and %s, and nine times in ten between %s and %s, judged from %s. An equal blood level is not an equal effect, nor safety. This is not a range to choose from.",
+		level, at, f(mn.range50.Low), f(mn.range50.High), f(mn.range90.Low), f(mn.range90.High), record)
 }
 
 // loading carries a loading dose: it follows volume, so mg/kg is unchanged,
@@ -555,7 +563,7 @@ func (n *numbers) bases(c *Case) (out []BasisLine, missing []UnavailableLine) {
 		}
 		t, mo, err := pairRates(b, eq, c, m)
 		if err != nil {
-			missing = append(missing, UnavailableLine{Basis: b.String(), Why: strings.TrimPrefix(err.Error(), b.String()+": ")})
+			missing = append(missing, UnavailableLine{Basis: b.String(), Why: reason(err)})
 			continue
 		}
 		s := t.watt / mo.watt / mn.m

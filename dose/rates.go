@@ -52,7 +52,7 @@ func Rates(a *species.Animal, m metabolic.Mass, t metabolic.Celsius, hasT bool, 
 	for _, b := range Bases() {
 		r, err := basisRate(b, nil, a, m, t, q10)
 		if err != nil {
-			missing = append(missing, UnavailableLine{Basis: b.String(), Why: strings.TrimPrefix(err.Error(), b.String()+": ")})
+			missing = append(missing, UnavailableLine{Basis: b.String(), Why: reason(err)})
 			continue
 		}
 		if e := r.line.equation; e != nil {

@@ -208,7 +208,7 @@ func (n *numbers) planSteps(s *slate, c *Case, i int) {
 		ks = []int{0, 1}
 	}
 	tau := float64(r.Interval.Hours)
-	scaling := "method: clearance follows metabolic rate"
+	scaling := "clearance is taken to follow metabolic rate"
 	switch p.name {
 	case PlanOnce:
 		for _, k := range ks {
@@ -284,7 +284,7 @@ func (n *numbers) rangeSteps(s *slate, c *Case, i int) {
 		extra = fmt.Sprintf(", then in quadrature %s (temperature, assumed) and %s (estimated masses)", f6(sp.temperature), f6(sp.massPerKg))
 	}
 	s.add("Standard deviation of ln dose", "sd = the larger of the two"+map[bool]string{true: ", with temperature and mass", false: ""}[extra != ""],
-		"max("+f6(sp.floor)+", "+f6(sp.composed)+")"+extra, sp.perKg, "", "method")
+		"max("+f6(sp.floor)+", "+f6(sp.composed)+")"+extra, sp.perKg, "", "the record already holds the scatter of species, so the two are not added")
 	p := mn.plan()
 	about := p.dose
 	if p.name == PlanOnce {

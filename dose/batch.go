@@ -253,11 +253,11 @@ type RowDrafter struct {
 	c     Case
 	n     numbers
 
-	animals      memo[part[*species.Animal]]
-	masses       memo[part[metabolic.BodyMass]]
-	temperatures memo[part[metabolic.Celsius]]
-	settings     memo[part[setting]]
-	models       memo[part[knownModel]]
+	animals      memo[*part[*species.Animal]]
+	masses       memo[*part[metabolic.BodyMass]]
+	temperatures memo[*part[metabolic.Celsius]]
+	settings     memo[*part[setting]]
+	models       memo[*part[knownModel]]
 	hazards      hazardMemo
 	key          []byte
 }
@@ -325,23 +325,23 @@ func (d *RowDrafter) Draft(row *Row, out *RowDraft) error {
 func (d *RowDrafter) read(row *Row) InputErrors {
 	c := &d.c
 	who := d.who(row)
-	animal := d.animals.get(row[ColumnSpecies], func() part[*species.Animal] {
+	animal := d.animals.get(row[ColumnSpecies], func() *part[*species.Animal] {
 		k, in := &checker{}, d.batch.partly(row, ColumnSpecies)
 		a := k.animal(in.Patient.Species, Entry{}, columns[ColumnSpecies].field)
-		return part[*species.Animal]{a, a != nil, k.faults()}
+		return &part[*species.Animal]{a, a != nil, k.faults()}
 	})
-	mass := d.masses.get(row[ColumnMass], func() part[metabolic.BodyMass] {
+	mass := d.masses.get(row[ColumnMass], func() *part[metabolic.BodyMass] {
 		k, in := &checker{}, d.batch.partly(row, ColumnMass)
 		m, ok := need(k, in.Patient.Mass, Entry{}, columns[ColumnMass].field, massRemedy, metabolic.ParseBodyMass)
-		return part[metabolic.BodyMass]{m, ok, k.faults()}
+		return &part[metabolic.BodyMass]{m, ok, k.faults()}
 	})
-	temperature := d.temperatures.get(row[ColumnTemperature], func() part[metabolic.Celsius] {
+	temperature := d.temperatures.get(row[ColumnTemperature], func() *part[metabolic.Celsius] {
 		k, in := &checker{}, d.batch.partly(row, ColumnTemperature)
 		t, ok := read(k, in.Patient.Temperature, columns[ColumnTemperature].field, metabolic.ParseTemperature)
-		return part[metabolic.Celsius]{t, ok, k.faults()}
+		return &part[metabolic.Celsius]{t, ok, k.faults()}
 	})
-	set := d.settings.get(d.join(row, settingColumns), func() part[setting] { return d.batch.readSetting(row) })
-	model := d.models.get(d.join(row, modelColumns), func() part[knownModel] { return d.batch.readModel(row) })
+	set := d.settings.get(d.join(row, settingColumns), func() *part[setting] { return d.batch.readSetting(row) })
+	model := d.models.get(d.join(row, modelColumns), func() *part[knownModel] { return d.batch.readModel(row) })
 
 	c.Patient = Patient{Animal: animal.value, Mass: mass.value, Temperature: temperature.value, HasTemperature: temperature.given,
 		Stage: set.value.stage, Conditions: set.value.conditions, FoodProducing: set.value.foodProducing}
@@ -393,21 +393,21 @@ func (b *Batch) partly(row *Row, cells ...Column) *CaseInput {
 	return in
 }
 
-func (b *Batch) readSetting(row *Row) part[setting] {
+func (b *Batch) readSetting(row *Row) *part[setting] {
 	in, k, c := b.partly(row, settingColumns...), &checker{}, &Case{}
 	if !in.Drug.Name.Given() {
 		in.Drug.Name = E(UnnamedDrug)
 	}
 	k.state(&in.Patient, c)
 	k.drug(in, c)
-	return part[setting]{setting{c.Drug, traitsOf(&c.Drug), c.Patient.Stage, c.Patient.Conditions, c.Patient.FoodProducing}, true, k.faults()}
+	return &part[setting]{setting{c.Drug, traitsOf(&c.Drug), c.Patient.Stage, c.Patient.Conditions, c.Patient.FoodProducing}, true, k.faults()}
 }
 
-func (b *Batch) readModel(row *Row) part[knownModel] {
+func (b *Batch) readModel(row *Row) *part[knownModel] {
 	in, k, c := b.partly(row, modelColumns...), &checker{}, &Case{}
 	k.models(in, c)
 	k.temperatures(in, c)
-	return part[knownModel]{knownModel{c.Models[0], &modelRates{}}, true, k.faults()}
+	return &part[knownModel]{knownModel{c.Models[0], &modelRates{}}, true, k.faults()}
 }
 
 // faults are the faults found, by column, without spare room: what is appended

@@ -252,9 +252,13 @@ func raiseMassLimits(r *rate, m metabolic.Mass, whose int, add adder) {
 // have, and raises the widest disagreement.
 func raiseDisagreement(c *Case, mn *modelNumbers, i int, th *Thresholds, add adder) {
 	worst, worstBasis := 1.0, BasisGroup
+	own := mn.pair.target.measured
 	for b := BasisGroup; b <= BasisRelatives; b++ {
 		if b == c.Method.Basis {
 			continue
+		}
+		if b == BasisMeasured && (own == nil || !own.reaches(c.Patient.Mass.Middle)) {
+			continue // as rates would say, but most animals have none: spare the words
 		}
 		t, mo, err := mn.pair.rates(b, nil)
 		if err != nil {

@@ -109,17 +109,32 @@ func (r *RelativesLine) read() bool {
 	return true
 }
 
-// At is the line at a mass and, for an ectotherm, a body temperature; its
-// errors are those of [Relatives].
+// At is the prediction at a mass and, for an ectotherm, a body temperature;
+// its errors are those of [Relatives].
 func (r *RelativesLine) At(m metabolic.Mass, t metabolic.Celsius) (*Prediction, error) {
-	unavailable := func(format string, args ...any) (*Prediction, error) {
-		return nil, &UnavailableError{Basis: "relatives", Why: fmt.Sprintf(format, args...)}
+	p := r.prediction
+	var err error
+	if p.Rate, p.SDln, err = r.Rate(m, t); err != nil {
+		return nil, err
+	}
+	return &p, nil
+}
+
+// Kin is all of the prediction that does not depend on mass and temperature:
+// Rate and SDln are 0. It is shared and must not be changed.
+func (r *RelativesLine) Kin() *Prediction { return &r.prediction }
+
+// Rate is the rate that At predicts, with the standard deviation of its
+// logarithm.
+func (r *RelativesLine) Rate(m metabolic.Mass, t metabolic.Celsius) (rate metabolic.Power, sdLn float64, err error) {
+	unavailable := func(format string, args ...any) (metabolic.Power, float64, error) {
+		return 0, 0, &UnavailableError{Basis: "relatives", Why: fmt.Sprintf(format, args...)}
 	}
 	if !(m > 0) || math.IsInf(float64(m), 1) {
 		return unavailable("a mass of %v kg has no rate", float64(m))
 	}
 	if r.missing != "" {
-		return nil, &UnavailableError{Basis: "relatives", Why: r.missing}
+		return 0, 0, &UnavailableError{Basis: "relatives", Why: r.missing}
 	}
 	a := r.animal
 	room := [2]float64{math.Log(float64(m)), float64(t)}
@@ -134,9 +149,7 @@ func (r *RelativesLine) At(m metabolic.Mass, t metabolic.Celsius) (*Prediction, 
 	if err != nil {
 		return unavailable("%v", err)
 	}
-	p := r.prediction
-	p.Rate, p.SDln = metabolic.Power(math.Exp(predicted.Mean)), predicted.SD
-	return &p, nil
+	return metabolic.Power(math.Exp(predicted.Mean)), predicted.SD, nil
 }
 
 // plain reports whether a rank's name cannot be mistaken for a path of names.

@@ -126,11 +126,11 @@ func (r *caseReader) pairs(path string, n ast.Node) (ps []pair, ok bool) {
 			continue
 		case key.plain && r.yaml.glued(key):
 			// In braces the library reads {dose:4} as a key and a value, YAML as one text.
-			r.fault(key.Entry, joinPath(path, key.Text), "no space after the colon", "write a space between the colon and the value")
+			r.fault(key.Entry, userPath(path, key.Text), "no space after the colon", "write a space between the colon and the value")
 			continue
 		}
 		if line, twice := first[key.Text]; twice {
-			r.fault(key.Entry, joinPath(path, key.Text), fmt.Sprintf("given twice, first on line %d", line), "keep one of the two")
+			r.fault(key.Entry, userPath(path, key.Text), fmt.Sprintf("given twice, first on line %d", line), "keep one of the two")
 			continue
 		}
 		first[key.Text] = key.Line
@@ -292,7 +292,7 @@ func (r *caseReader) named(path string, n ast.Node, to *[]NamedEntry) {
 			r.fault(at, path, "not a usable name: "+quoteShort(p.key.Text), "write the name of one caution, a colon and the text")
 			continue
 		}
-		if e, ok := r.text(joinPath(path, p.key.Text), at, p.value, true); ok {
+		if e, ok := r.text(userPath(path, p.key.Text), at, p.value, true); ok {
 			*to = append(*to, NamedEntry{Name: p.key.Entry, Value: e})
 		}
 	}

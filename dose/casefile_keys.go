@@ -289,6 +289,15 @@ func joinPath(path, name string) string {
 	return path + "." + name
 }
 
+// userPath is the path of a key that may be the user's own: quoted when a letter
+// of it could act on the terminal, and never long.
+func userPath(path, name string) string {
+	if q := quoteShort(name); q != `"`+name+`"` {
+		return joinPath(path, q)
+	}
+	return joinPath(path, name)
+}
+
 // editDistance counts the letters to insert, delete, change or swap with the
 // neighbour that turn one word into the other.
 func editDistance(a, b string) int {
@@ -316,12 +325,15 @@ func editDistance(a, b string) int {
 
 // quoteShort quotes a word of the user's for a message, so that no letter in it
 // can act on the terminal and no length can drown the message.
-func quoteShort(s string) string {
+func quoteShort(s string) string { return strconv.Quote(shorten(s)) }
+
+// shorten cuts a word of the user's to what a message can bear.
+func shorten(s string) string {
 	const most = 40
 	if utf8.RuneCountInString(s) > most {
-		s = string([]rune(s)[:most]) + "…"
+		return string([]rune(s)[:most]) + "…"
 	}
-	return strconv.Quote(s)
+	return s
 }
 
 // nameLetter names a letter that a reader may not see or may take for another.

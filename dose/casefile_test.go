@@ -570,6 +570,27 @@ func TestReadCaseChangesNoText(t *testing.T) {
 	})
 }
 
+// A name of the user's own appears in messages: no letter of it may act there.
+func TestMessagesAreOneLine(t *testing.T) {
+	for _, yaml := range []string{
+		"overrides:\n  \"a\\nb\": x\n  \"a\\nb\": y\n",
+		"overrides:\n  \"a\\eb\": x\n",
+		"\"\\u202ecase\": x\n\"\\u202ecase\": x\n",
+		"patient:\n  \"\\n\": {\"\\n\":4}\n",
+	} {
+		_, _, err := ReadCase("f", []byte(yaml))
+		var faults InputErrors
+		if !errors.As(err, &faults) {
+			t.Fatalf("%s: %v", yaml, err)
+		}
+		for _, f := range faults {
+			if strings.ContainsFunc(f.Error(), func(r rune) bool { return !unicode.IsPrint(r) }) {
+				t.Errorf("%q", f.Error())
+			}
+		}
+	}
+}
+
 func TestUnknownKeyNearest(t *testing.T) {
 	for _, tt := range []struct{ section, key, want string }{
 		{"patient", "mas", `did you mean "mass"?`},

@@ -17,7 +17,7 @@ import (
 // ReadCase gives the same texts back for every case that ReadCase can give. A
 // text may hold anything in a case from elsewhere: letters that are not UTF-8
 // become U+FFFD, and control characters are written as escapes, which ReadCase
-// refuses by name.
+// refuses by name. The table of the command fit is no part of a case file.
 func WriteCase(c *CaseInput) []byte {
 	var b bytes.Buffer
 	writeKeys(&b, "", c.caseKeys())

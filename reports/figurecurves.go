@@ -62,9 +62,14 @@ func curvesPlot(w *dose.Worksheet) *plot.Plot {
 	top := 0.0
 	xys := make([]plotter.XYs, len(curves))
 	for i, cv := range curves {
+		// The last dose of the span belongs to the time after it.
 		for _, q := range cv.Points(0, span*(1-1e-6), curvePoints) {
 			xys[i] = append(xys[i], plotter.XY{X: q.H, Y: q.C})
 			top = math.Max(top, q.C)
+		}
+		// A record that was read back has the numbers of a course, not the course.
+		if len(xys[i]) == 0 || !(top > 0) {
+			return nil
 		}
 	}
 	if w.Target != nil && curves[0].Unit == w.Target.Unit {

@@ -2,6 +2,7 @@ package reports
 
 import (
 	"fmt"
+	"strings"
 	"unicode"
 	"unicode/utf8"
 
@@ -66,6 +67,15 @@ func CheckText(field, s string) (string, error) {
 		}
 	}
 	return s2, nil
+}
+
+// onOneLine sets a text that was written over several lines on one, as paper
+// does: its line breaks and tabs are spaces.
+func onOneLine(s string) string {
+	if !strings.ContainsAny(s, "\r\n\t") {
+		return s
+	}
+	return strings.Join(strings.FieldsFunc(s, func(r rune) bool { return r == '\r' || r == '\n' || r == '\t' }), " ")
 }
 
 // isPlain reports whether s holds nothing but the visible ASCII letters and

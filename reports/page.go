@@ -117,7 +117,7 @@ func (d *document) admit(runs []run) []run {
 		if isPlain(runs[i].text) {
 			continue
 		}
-		text, err := CheckText(d.where, runs[i].text)
+		text, err := CheckText(d.where, onOneLine(runs[i].text))
 		if err != nil {
 			d.fail(err)
 		}

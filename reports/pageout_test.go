@@ -160,7 +160,7 @@ func TestRenderErrors(t *testing.T) {
 			d.body.table(pageTable{columns: []tableColumn{{head: "a"}}, rows: []tableRow{{cells: cellTexts("\u202e")}}})
 		}, nil, []string{"model.source", "U+202E"}},
 		{"letter in a table head", func(d *document) { d.body.table(pageTable{columns: []tableColumn{{head: "🐾"}}}) }, nil, []string{"U+1F43E"}},
-		{"letter in a step", func(d *document) { d.body.step(slateStep{title: "t", substituted: "a\tb"}) }, nil, []string{"U+0009"}},
+		{"letter in a step", func(d *document) { d.body.step(slateStep{title: "t", substituted: "a\vb"}) }, nil, []string{"U+000B"}},
 		{"letter in an item", func(d *document) { d.body.item(markedItem{text: []run{plain("ok")}, under: []run{plain("\x00")}}) }, nil, []string{"U+0000"}},
 		{"letter in a name", func(d *document) { d.body.pairs(1, keyValue{"م", nil}) }, nil, []string{"U+0645"}},
 		{"letter under a line to sign", func(d *document) { d.body.signatures(1, "\ue000") }, nil, []string{"U+E000"}},

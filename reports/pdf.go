@@ -56,10 +56,10 @@ func PDF(ws *dose.Worksheet, o PDFOptions) ([]byte, error) {
 	s := newSheet(ws, o.Paper, Digest(record))
 	s.whole()
 	pr := properties{
-		title:    "Worksheet " + caseWords(ws) + ", " + patientName(&ws.Patient),
-		subject:  "Draft of a starting dose of " + ws.Drug.Name + " for a licensed veterinarian's judgement; not a prescription",
-		keywords: strings.Join([]string{ws.Patient.Species, ws.Drug.Name, "allometric scaling", "draft", "record " + Digest(record)}, ", "),
-		author:   ws.PreparedBy,
+		title:    "Worksheet " + caseWords(ws) + ", " + onOneLine(patientName(&ws.Patient)),
+		subject:  "Draft of a starting dose of " + onOneLine(ws.Drug.Name) + " for a licensed veterinarian's judgement; not a prescription",
+		keywords: strings.Join([]string{ws.Patient.Species, onOneLine(ws.Drug.Name), "allometric scaling", "draft", "record " + Digest(record)}, ", "),
+		author:   onOneLine(ws.PreparedBy),
 		producer: producer(),
 		date:     date,
 		attached: []attachment{{attachedRecord, "the record of this worksheet, " + dose.Format, record}},
@@ -117,10 +117,23 @@ func (s *sheet) whole() {
 	s.signature()
 }
 
+// mostTogether is how many rows of a table are kept on one page. A longer table
+// runs over, with its head repeated.
+const mostTogether = 10
+
+// table adds a table, on one page if it is short.
+func (s *sheet) table(t pageTable) {
+	if len(t.rows) > mostTogether {
+		s.f.table(t)
+		return
+	}
+	s.f.together(func(f *flow) { f.table(t) })
+}
+
 // caseWords names the case.
 func caseWords(ws *dose.Worksheet) string {
 	if ws.Case == "" {
 		return "without a case number"
 	}
-	return ws.Case
+	return onOneLine(ws.Case)
 }

@@ -40,7 +40,7 @@ func (s *sheet) otherBases() {
 	rate := func(w float64) string { return metabolic.FormatPower(metabolic.Power(w)) }
 	for i := range ws.Bases {
 		b := &ws.Bases[i]
-		name, cell, per := b.Basis, plain, "none: stopped"
+		name, cell, per := b.Basis, plain, ""
 		if b.ID != "" {
 			name += " (" + b.ID + ")"
 		}
@@ -57,7 +57,8 @@ func (s *sheet) otherBases() {
 		}
 		t.rows = append(t.rows, tableRow{cells: [][]run{{cell(name)}, {cell(rate(b.PatientW))}, {cell(rate(b.ModelW))}, {cell(metabolic.FormatRatio(b.Specific))}, {cell(per)}}})
 	}
-	f.table(t)
+	t.drop(map[int]bool{4: ws.Drafted == nil})
+	s.table(t)
 	for _, u := range ws.Unavailable {
 		f.bullet(paraStyle{}, bold("No "+u.Basis+": "), plain(paperText(u.Why)+"."))
 	}
@@ -69,7 +70,7 @@ func (s *sheet) otherBases() {
 		x := &ws.Exponents[i]
 		e.rows = append(e.rows, tableRow{cells: cellTexts(metabolic.FormatRatio(x.Exponent), metabolic.FormatRatio(x.Specific), perKgPair(x.DosePerKg, m.Unit), paperText(x.Remark))})
 	}
-	f.table(e)
+	s.table(e)
 }
 
 // temperatures is the draft of an ectotherm at other body temperatures.
@@ -92,7 +93,7 @@ func (s *sheet) temperatures() {
 		}
 		t.rows = append(t.rows, tableRow{cells: [][]run{{cell(metabolic.FormatCelsius(metabolic.Celsius(l.TemperatureC)) + note)}, {cell(metabolic.FormatRatio(l.Specific))}, {cell(perKgPair(l.DosePerKg, m.Unit))}, {cell(every)}}})
 	}
-	f.table(t)
+	s.table(t)
 }
 
 // rateHeight is the height of the figure of rates.
@@ -123,19 +124,21 @@ func (s *sheet) rates() {
 	}
 	patient := animalWords(ws.Patient.CommonName, ws.Patient.Species)
 	marks := []rateMark{{name: at("patient: "+patient, ws.Patient.TemperatureC), mass: ws.Patient.MassKg, watt: ws.Patient.RateW, bold: true}}
-	caption := "Rings: the measured animals of the class " + ws.Patient.Class + ". Filled: the rates used, and the patient's kind as it was measured."
+	caption := "Rings: the measured animals of the class " + ws.Patient.Class + ". Filled: the rates used"
+	other := ""
 	if m.Class == ws.Patient.Class {
 		marks = append(marks, rateMark{name: at("model: "+modelName(m), m.TemperatureC), mass: m.MassKg, watt: m.RateW})
 	} else {
-		caption += " The model is of another class (" + m.Class + ") and is not shown."
+		other = " The model is of another class (" + m.Class + ") and is not shown."
 	}
 	if own, ok := species.MeasuredRate(a); ok && own.Flag == "" {
 		marks = append(marks, rateMark{name: "as measured: " + patient, mass: float64(own.Mass), watt: float64(own.Rate)})
+		caption += ", and the patient's kind as it was measured"
 	}
 	p := ratePlot(a.Class, linesOfAnimal(a, t, q10), marks)
 	if p == nil {
 		return
 	}
 	s.f.heading("Where the animals lie among measured ones")
-	s.drawn(p, rateHeight, caption)
+	s.drawn(p, rateHeight, caption+"."+other)
 }

@@ -75,7 +75,7 @@ func (s *sheet) publishedDoses() {
 		t.rows = append(t.rows, tableRow{cells: cellTexts(animalWords(p.CommonName, p.Species), relationWords(p.Relation), given, ratio, p.Source)})
 	}
 	t.drop(map[int]bool{3: s.ws.Drafted == nil})
-	f.table(t)
+	s.table(t)
 }
 
 // proposed holds a proposed regimen against the draft.
@@ -122,7 +122,7 @@ func (s *sheet) proposed() {
 	if p.Ratios.Trough != nil {
 		row("trough", "", "", ratio(*p.Ratios.Trough))
 	}
-	f.table(t)
+	s.table(t)
 	for _, v := range p.Verdict {
 		f.bullet(paraStyle{}, plain(paperText(v)))
 	}

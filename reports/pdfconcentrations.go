@@ -87,7 +87,7 @@ func (s *sheet) concentrationTable(single bool) {
 		drop[5] = single
 	}
 	t.drop(drop)
-	s.f.table(t)
+	s.table(t)
 	var notes []string
 	if relative {
 		notes = append(notes, "Concentrations are "+unit+".")

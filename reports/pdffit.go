@@ -38,7 +38,7 @@ func (s *sheet) fittedLine(r *dose.FitRecord) {
 	t.rows = append(t.rows,
 		tableRow{cells: [][]run{{bold(at + ", fitted exponent")}, {bold(value(r.AtTarget.Value))}, {bold(span(r.AtTarget.CI95))}, {bold(span(r.AtTarget.PI95))}}},
 		tableRow{cells: cellTexts(at+", exponent "+metabolic.FormatRatio(r.Fixed.Exponent), value(x.Value), span(x.CI95), span(x.PI95))})
-	f.table(t)
+	s.table(t)
 	if g := r.Regimen; g != nil {
 		text := "Average concentration kept: " + number(g.Average) + " " + amountName(s.unit) + "/L (" + g.AverageSource + "); bioavailability " + metabolic.FormatPercent(g.Bioavailable)
 		if g.HalfLifeH > 0 {

@@ -65,14 +65,14 @@ func checkTexts(path string, v reflect.Value) error {
 			}
 		}
 	case reflect.String:
-		_, err := CheckText(path, v.String())
+		_, err := CheckText(path, onOneLine(v.String()))
 		return err
 	}
 	return nil
 }
 
 func checkEntry(path string, e dose.Entry) error {
-	_, err := CheckText(path, e.Text)
+	_, err := CheckText(path, onOneLine(e.Text))
 	var letter *LetterError
 	if errors.As(err, &letter) {
 		letter.Line, letter.Column = e.Line, e.Column

@@ -42,7 +42,7 @@ func (s *sheet) theCase() {
 	}
 	add("Animal", animal)
 	add("Family, order", p.Family+", "+p.Order)
-	add("Mass as written", p.MassTyped)
+	add("Mass as written", asGiven(p.MassTyped))
 	add("Adults weigh", adults)
 	if p.TemperatureC != nil {
 		add("Body temperature", metabolic.FormatCelsius(metabolic.Celsius(*p.TemperatureC)))
@@ -92,7 +92,7 @@ func (s *sheet) plans() {
 	if p.TemperatureC == nil && m.TemperatureC == nil {
 		t.columns = t.columns[:4]
 	}
-	f.table(t)
+	s.table(t)
 	r := &m.Ratios
 	f.para(plain("Patient over model: of mass, "), bold("M = "+metabolic.FormatRatio(r.Mass)), plain("; of metabolic rate, "), bold("R = "+metabolic.FormatRatio(r.Metabolic)),
 		plain("; of rate per kg, S = R/M, "), bold("S = "+metabolic.FormatRatio(r.Specific)), plain("."))
@@ -100,7 +100,7 @@ func (s *sheet) plans() {
 		return
 	}
 	f.heading("The plans side by side")
-	f.table(planTable(m))
+	s.table(planTable(m))
 	for i := range m.Plans {
 		q := &m.Plans[i]
 		text := paperText(q.Remark)
@@ -150,6 +150,7 @@ func (s *sheet) howFarOff() {
 	f.heading("How far off the dose may be")
 	if s.ws.Fit == nil {
 		f.para(plain("Standard deviations (sd) of ln dose. Nine times in ten: the dose divided by and times exp(1.645 × sd); as likely as not: by and times exp(0.674 × sd)."))
+		f.keepNext()
 	} else {
 		f.para(plain("Standard deviations (sd) of ln dose."))
 	}
@@ -162,7 +163,7 @@ func (s *sheet) howFarOff() {
 		}
 		t.rows = append(t.rows, tableRow{cells: [][]run{{plain(q.Name)}, {plain(metabolic.Significant(q.SD, 3))}, {plain(text)}}, rule: strings.HasPrefix(q.Name, "together, of mg/kg") || strings.HasPrefix(q.Name, "the larger")})
 	}
-	f.table(t)
+	s.table(t)
 }
 
 // trackRecord is what became of such predictions elsewhere.

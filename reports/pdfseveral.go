@@ -53,7 +53,7 @@ func (s *sheet) severalModels() {
 		t.rows = append(t.rows, row)
 	}
 	t.size = sizeSmall
-	f.table(t)
+	s.table(t)
 	for i := range ws.Drafts {
 		f.bullet(paraStyle{}, plain("Source of the dose in the "+modelName(&ws.Drafts[i])+": "+ws.Drafts[i].Source+"."))
 	}
@@ -76,5 +76,5 @@ func (s *sheet) severalModels() {
 		x := &v.Models[i]
 		b.rows = append(b.rows, tableRow{cells: cellTexts(animalWords(x.CommonName, x.Model), perDay(x.PublishedDaily), perDay(x.PredictedDaily), metabolic.Significant(x.FoldError, 3))})
 	}
-	f.table(b)
+	s.table(b)
 }

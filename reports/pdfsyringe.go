@@ -19,7 +19,7 @@ func (s *sheet) syringe() {
 	if p.AmountPerPiece > 0 {
 		text += " per " + p.Form
 	}
-	if typed := asGiven(p.StrengthTyped); typed != "" && typed != strengthWords(p, s.unit) {
+	if typed := asGiven(p.StrengthTyped); typed != "" && typed != strings.ReplaceAll(strengthWords(p, s.unit), ",", "") && typed != strengthWords(p, s.unit) {
 		text += " (given as " + typed + ")"
 	}
 	switch {
@@ -119,7 +119,7 @@ func (s *sheet) measureTable() {
 		return
 	}
 	t.drop(map[int]bool{0: len(t.rows) == 1, 6: !course, 7: !total})
-	s.f.table(t)
+	s.table(t)
 }
 
 // administration is the dilution and the sites of one dose.

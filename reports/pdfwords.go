@@ -3,15 +3,18 @@ package reports
 import (
 	"regexp"
 	"strings"
+	"sync"
 )
 
 // The wording that only paper has: true superscripts and subscripts in
 // formulas, and units as medication safety asks for them.
 
 var (
-	powers = regexp.MustCompile(`\^\(?([-−]?[0-9]+(?:\.[0-9]+)?|b)\)?`)
+	powers = sync.OnceValue(func() *regexp.Regexp {
+		return regexp.MustCompile(`\^\(?([-−]?[0-9]+(?:\.[0-9]+)?|b)\)?`)
+	})
 	// symbols of the method whose last letter is an index; σ is no letter to \b
-	indexed = regexp.MustCompile(`\bQ10\b|\b[WBT][0tm]\b|σ[tm]\b`)
+	indexed = sync.OnceValue(func() *regexp.Regexp { return regexp.MustCompile(`\bQ10\b|\b[WBT][0tm]\b|σ[tm]\b`) })
 
 	raised = strings.NewReplacer("0", "⁰", "1", "¹", "2", "²", "3", "³", "4", "⁴", "5", "⁵", "6", "⁶", "7", "⁷", "8", "⁸", "9", "⁹",
 		"-", "⁻", "−", "⁻", ".", "·", "b", "ᵇ")
@@ -26,7 +29,7 @@ func paperText(s string) string {
 	if !strings.Contains(s, "^") {
 		return s
 	}
-	return powers.ReplaceAllStringFunc(s, func(p string) string {
+	return powers().ReplaceAllStringFunc(s, func(p string) string {
 		exponent := strings.TrimPrefix(p, "^")
 		if strings.HasPrefix(exponent, "(") != strings.HasSuffix(exponent, ")") {
 			if !strings.HasPrefix(exponent, "(") { // the bracket after it closes another
@@ -40,7 +43,7 @@ func paperText(s string) string {
 
 // paperFormula is a formula in symbols, its indices lowered.
 func paperFormula(s string) string {
-	return indexed.ReplaceAllStringFunc(paperText(s), func(x string) string {
+	return indexed().ReplaceAllStringFunc(paperText(s), func(x string) string {
 		if x == "Q10" {
 			return lowered.Replace(x)
 		}

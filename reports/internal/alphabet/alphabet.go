@@ -18,6 +18,7 @@ var Blocks = []Block{
 	{0x02B9, 0x02DD}, // modifier letters: the ʻokina of Hawaiian names, primes
 	{0x0370, 0x03FF}, // Greek
 	{0x0400, 0x052F}, // Cyrillic and its supplement
+	{0x1D47, 0x1D47}, // the raised b of a power a·Wᵇ
 	{0x1E00, 0x1EFF}, // Latin Extended Additional
 	{0x1F00, 0x1FFF}, // Greek Extended
 	{0x2000, 0x205F}, // General Punctuation, thin and fixed spaces

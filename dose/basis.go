@@ -105,7 +105,6 @@ type rateLine struct {
 	relatives *species.RelativesLine // relatives
 	kind      string                 // BMR, SMR; "resting" for a measured row that is not basal
 	scatter   species.Scatter        // group and equation: how far species lie from the line
-	fallback  string                 // said when the animal had no group constant and this stands in
 }
 
 // animalLines is every basis that one animal has, whatever its mass, and what

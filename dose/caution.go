@@ -63,6 +63,7 @@ const (
 	Anatomy          Slug = "anatomy"
 	Accumulation     Slug = "accumulation"
 	FlipFlop         Slug = "flip-flop"
+	StandIn          Slug = "basis-stands-in"
 	NameTakenAs      Slug = "name-taken-as"
 	DrugNotNamed     Slug = "drug-not-named"
 	HazardOnFile     Slug = "hazard" // followed by the row's id: hazard-h019

@@ -165,6 +165,15 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 	case AdultMass:
 		*t = fmt.Sprintf("A mass of %s is outside the adult range on file, %s to %s: young, obese, ill, or another animal?", kg("mass", r.a), kg("adult_low", r.b), kg("adult_high", r.c))
 		out.Source = massSource(c, r.model)
+	case StandIn:
+		a := c.Patient.Animal
+		if r.model >= 0 {
+			a = c.Models[r.model].Animal
+		}
+		*t = fmt.Sprintf("No group constant is published for a %s: for the %s the basis %s stands in.", a.Group, who, r.detail)
+		if r.level == Warn {
+			*t += " The two animals then stand on two different bases, which adds an error that the range does not hold."
+		}
 	case NameTakenAs:
 		a := c.Patient.Animal
 		if r.model >= 0 {

@@ -183,6 +183,7 @@ func raiseModel(c *Case, n *numbers, i int, add adder) {
 	if mn.model.lowConfidence() {
 		add(LowConfidence, Warn, i).detail = mn.model.line.equation.ID
 	}
+	raiseStandIn(c, mn, i, add)
 	if mn.target.line.basis == BasisGroup || mn.model.line.basis == BasisGroup {
 		add(GroupConstant, Note, i)
 	}
@@ -230,6 +231,25 @@ func raiseModel(c *Case, n *numbers, i int, add adder) {
 		if g, h := mn.pair.target.body.gut, mn.pair.model.body.gut; g != "" && h != "" && g != h {
 			add(GutType, Warn, i)
 		}
+	}
+}
+
+// raiseStandIn says where an animal without a group constant took another
+// basis: a note, and a warning where the two animals then stand on two bases.
+func raiseStandIn(c *Case, mn *modelNumbers, i int, add adder) {
+	if c.Method.Basis != BasisGroup {
+		return
+	}
+	t, m := mn.target.line.basis, mn.model.line.basis
+	l := Note
+	if t != m {
+		l = Warn
+	}
+	if t != BasisGroup {
+		add(StandIn, l, -1).detail = t.String()
+	}
+	if m != BasisGroup {
+		add(StandIn, l, i).detail = m.String()
 	}
 }
 

@@ -42,11 +42,16 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 		*t = "The drug's margin is narrow: an error of the size in the published record can harm. Measure concentrations, or choose another drug."
 		out.Source = "Houben, veterinary review, Ghent (read: summary)"
 	case CrossClass:
-		*t = fmt.Sprintf("Patient (%s) and model (%s) are of different classes. Of 30 avian clearances predicted from mammals, 7 fell within 2-fold and 13 within 3-fold of the observed value.", classWords(c.Patient.Animal), classWords(c.Models[r.model].Animal))
+		*t = fmt.Sprintf("Patient (%s) and model (%s) are of different classes.", classWords(c.Patient.Animal), classWords(c.Models[r.model].Animal))
+		if c.Patient.Animal.Endotherm() && c.Models[r.model].Animal.Endotherm() {
+			*t += " Of 30 avian clearances predicted from mammals, 7 fell within 2-fold and 13 within 3-fold of the observed value."
+			out.Source = "Hunter et al. 2008 J Zoo Wildl Med 39"
+		} else {
+			*t += " No published record of scaling between them is known to this program."
+		}
 		if r.level == Warn {
 			*t += " The case calls the margin wide."
 		}
-		out.Source = "Hunter et al. 2008 J Zoo Wildl Med 39"
 	case CrossThermy:
 		*t = fmt.Sprintf("One of the two warms itself, the other has the temperature of its surroundings (%s, %s). No published record of scaling between such animals is known to this program.", patient, who)
 	case TorpidPatient:

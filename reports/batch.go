@@ -37,8 +37,8 @@ type BatchOptions struct {
 	Part *BatchPart
 
 	// Progress is told how far the result is written, in rows and in bytes of
-	// the table, from one goroutine.
-	Progress func(rows int, read int64)
+	// the table, from one goroutine. An error ends the batch.
+	Progress func(rows int, read int64) error
 
 	// Notice is given what the reader of a table should know before the rows
 	// are worked out, one sentence a call.
@@ -290,7 +290,9 @@ func (r *batchRun) write(ctx context.Context, free chan<- *block, ordered <-chan
 			return b.err
 		}
 		if r.o.Progress != nil {
-			r.o.Progress(r.counts.Rows, b.read)
+			if err := r.o.Progress(r.counts.Rows, b.read); err != nil {
+				return err
+			}
 		}
 		free <- b
 	}

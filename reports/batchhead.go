@@ -215,7 +215,7 @@ func (h *batchHead) pass(typed string) {
 	name := sameHeading(typed)
 	for _, column := range dose.Columns() {
 		known := column.String()
-		if len(name) > 3 && headingSlips(name, known) <= 1+len(known)/8 {
+		if len(known) > 4 && headingSlips(name, known) <= 1+len(known)/8 {
 			h.doubts = append(h.doubts, fmt.Sprintf("column %s is passed through, not read; if %s is meant, name it so", strconv.Quote(typed), known))
 		}
 	}

@@ -52,6 +52,7 @@ tayra species anteater`,
 	root.AddCommand(
 		draftCommand(),
 		checkCommand(),
+		batchCommand(),
 		newCommand(),
 		speciesCommand(),
 		rateCommand(),

@@ -69,11 +69,16 @@ func fitPlot(f *dose.FitRecord) *plot.Plot {
 			at := vg.Point{X: tx(q.MassKg), Y: ty(q.Value)}
 			r := vg.Points(1.8 + 3.5*math.Sqrt(math.Max(0, math.Min(1, q.Leverage))))
 			c.DrawGlyph(draw.GlyphStyle{Color: ink, Radius: r, Shape: draw.RingGlyph{}}, at)
-			align, x := text.XLeft, at.X+r+vg.Points(3)
-			if x+textWidth(sizeSmall, false, q.Species) > c.Max.X {
-				align, x = text.XRight, at.X-r-vg.Points(3)
+			if len(f.Points) > mostNamed {
+				continue
 			}
-			writeText(c, sizeSmall, false, align, text.YTop, vg.Point{X: x, Y: at.Y - vg.Points(1)}, q.Species)
+			// Below and to the right of its mark a name keeps out of a line
+			// that rises; at the right edge it goes to the left, above.
+			align, x, y := text.XLeft, at.X+r+vg.Points(3), at.Y-vg.Points(9)
+			if x+textWidth(sizeSmall, false, q.Species) > c.Max.X {
+				align, x, y = text.XRight, at.X-r-vg.Points(3), at.Y+vg.Points(9)
+			}
+			groundedText(c, false, align, vg.Point{X: x, Y: y}, q.Species)
 		}
 		x := tx(f.AtTarget.MassKg)
 		y := func(v float64) vg.Length {
@@ -81,14 +86,29 @@ func fitPlot(f *dose.FitRecord) *plot.Plot {
 		}
 		c.StrokeLine2(lineStyle(1.2, 0), x, y(f.AtTarget.PI95[0]), x, y(f.AtTarget.PI95[1]))
 		at, r := vg.Point{X: x, Y: y(f.AtTarget.Value)}, vg.Points(4)
-		c.FillPolygon(ink, []vg.Point{{X: at.X - r, Y: at.Y}, {X: at.X, Y: at.Y + r}, {X: at.X + r, Y: at.Y}, {X: at.X, Y: at.Y - r}})
-		align, lx := text.XLeft, x+vg.Points(6)
-		if lx+textWidth(sizeSmall, true, "target") > c.Max.X {
-			align, lx = text.XRight, x-vg.Points(6)
+		point(c, shapeDiamond, at, r)
+		align, lx := text.XRight, x-vg.Points(8)
+		if lx-textWidth(sizeSmall, true, "target") < c.Min.X {
+			align, lx = text.XLeft, x+vg.Points(8)
 		}
-		writeText(c, sizeSmall, true, align, text.YBottom, vg.Point{X: lx, Y: at.Y + vg.Points(2)}, "target")
+		groundedText(c, true, align, vg.Point{X: lx, Y: at.Y + vg.Points(9)}, "target")
 	}))
 	return p
+}
+
+// mostNamed is how many animals have their names in the figure: more would hide
+// each other.
+const mostNamed = 20
+
+// groundedText sets a text on a ground of paper, which keeps lines out of its
+// letters.
+func groundedText(c draw.Canvas, heavy bool, x text.XAlignment, at vg.Point, s string) {
+	w, left := textWidth(sizeSmall, heavy, s), at.X
+	if x == text.XRight {
+		left -= w
+	}
+	c.FillPolygon(paperWhite, bar(at.Y, vg.Points(sizeSmall*0.55), left-1, left+w+1))
+	writeText(c, sizeSmall, heavy, x, text.YCenter, at, s)
 }
 
 func parameterWords(p dose.Parameter) string {

@@ -24,13 +24,19 @@ func stripLines(w *dose.Worksheet) []stripLine {
 	for _, b := range w.Bases {
 		if b.DosePerKg != nil {
 			name := "basis " + b.Basis
-			out = append(out, stripLine{name, b.DosePerKg[0], b.DosePerKg[1], b.Drafted})
+			out = append(out, stripLine{name, b.DosePerKg[0], b.DosePerKg[1], b.Drafted && draftedByBasis(w)})
 		}
 	}
 	for _, e := range w.Exponents {
 		out = append(out, stripLine{"exponent " + metabolic.Significant(e.Exponent, 3), e.DosePerKg[0], e.DosePerKg[1], false})
 	}
 	return out
+}
+
+// draftedByBasis says whether the draft follows from a metabolic rate. A dose
+// from a line fitted to data does not, and is no row of the strip.
+func draftedByBasis(w *dose.Worksheet) bool {
+	return w.Drafted != nil && w.Drafted.Plan != string(dose.PlanFitted)
 }
 
 // stripHeight is how many points the strip needs on paper.
@@ -55,6 +61,8 @@ func stripWords(w *dose.Worksheet) string {
 		return "The dose by clearance, under every basis that both animals have and under other exponents, with both ranges."
 	case from.Kind == "infusion":
 		return "The rate per kg under every basis that both animals have and under other exponents, with both ranges of the draft."
+	case !draftedByBasis(w):
+		return "The dose per kg " + intervalWords(from.Kind, from.IntervalH) + " by scaling, under every basis that both animals have and under other exponents; broken line and bars: the dose from the fitted line, with its ranges."
 	case toModelInterval(w) != 1:
 		return "The dose per kg " + intervalWords(from.Kind, from.IntervalH) + ", the model's interval, under every basis that both animals have and under other exponents. The draft and its ranges are carried to that interval by the daily amount."
 	}

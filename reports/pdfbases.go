@@ -8,6 +8,7 @@ import (
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
 
+	"tayra/dose"
 	"tayra/metabolic"
 	"tayra/species"
 )
@@ -34,9 +35,10 @@ func (s *sheet) otherBases() {
 	f.heading("If the basis were another")
 	if p := stripPlot(ws); p != nil {
 		f.para(plain(stripWords(ws)))
+		f.keepNext()
 		s.drawn(p, stripHeight(ws), "")
 	}
-	t := pageTable{columns: []tableColumn{{head: "basis"}, {head: "patient burns"}, {head: "model burns"}, {head: "S", align: alignDecimal}, {head: "dose per kg", align: alignDecimal}}}
+	t := pageTable{columns: []tableColumn{{head: "basis"}, {head: "patient burns"}, {head: "model burns"}, {head: "S", align: alignDecimal}, {head: strings.TrimSpace("dose per kg " + atInterval(m)), align: alignDecimal}}}
 	rate := func(w float64) string { return metabolic.FormatPower(metabolic.Power(w)) }
 	for i := range ws.Bases {
 		b := &ws.Bases[i]
@@ -49,7 +51,7 @@ func (s *sheet) otherBases() {
 		}
 		if b.Drafted {
 			cell = bold
-			if ws.Drafted != nil {
+			if draftedByBasis(ws) {
 				name += ", drafted"
 			} else {
 				name += ", used"
@@ -71,6 +73,15 @@ func (s *sheet) otherBases() {
 		e.rows = append(e.rows, tableRow{cells: cellTexts(metabolic.FormatRatio(x.Exponent), metabolic.FormatRatio(x.Specific), perKgPair(x.DosePerKg, m.Unit), paperText(x.Remark))})
 	}
 	s.table(e)
+}
+
+// atInterval says the interval at which doses under other bases are given: the
+// model's.
+func atInterval(m *dose.ModelDraft) string {
+	if m.IntervalH == nil {
+		return ""
+	}
+	return intervalWords(m.Kind, m.IntervalH)
 }
 
 // temperatures is the draft of an ectotherm at other body temperatures.

@@ -124,6 +124,9 @@ func (s *sheet) proposed() {
 	}
 	s.table(t)
 	for _, v := range p.Verdict {
+		if strings.HasPrefix(v, "It raises ") {
+			continue // the caution itself stands below
+		}
 		f.bullet(paraStyle{}, plain(paperText(v)))
 	}
 	for i := range p.Cautions {

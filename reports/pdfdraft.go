@@ -46,6 +46,9 @@ func (s *sheet) draftBox() {
 		f.para(plain(d.Meaning))
 		if s.from != nil {
 			from := "Drafted from the " + modelWords(s.from) + "."
+			if ws.Fit != nil && d.Plan == string(dose.PlanFitted) {
+				from = "Drafted from the line fitted to " + countWord(float64(ws.Fit.N), "animal") + ", for the average concentration that follows from the " + modelWords(s.from) + ", or that is given."
+			}
 			if d.Route == "" {
 				from += " No route is given."
 			}

@@ -47,7 +47,7 @@ func (s *sheet) fittedLine(r *dose.FitRecord) {
 		f.para(plain(text + "."))
 	}
 	if p := fitPlot(r); p != nil {
-		s.drawn(p, fitHeight, "A ring grows with the animal's leverage. Upright line: 95 % prediction at the target's mass.")
+		s.drawn(p, fitHeight, fitCaption(r))
 	}
 	for _, n := range r.Notes {
 		f.bullet(paraStyle{}, plain(paperText(n)))
@@ -55,9 +55,18 @@ func (s *sheet) fittedLine(r *dose.FitRecord) {
 	s.fittedAnimals(r, value)
 }
 
+// fitCaption says what the figure of a line shows.
+func fitCaption(r *dose.FitRecord) string {
+	text := "Rings: the animals, larger with more leverage. Diamond: the target, with its 95 % prediction."
+	if len(r.Points) > mostNamed {
+		text += " Names: see the table."
+	}
+	return text
+}
+
 // mostFitted is how many animals of a line are listed on paper; the attached
 // record has them all.
-const mostFitted = 120
+const mostFitted = 60
 
 // fittedAnimals lists the animals of a line, each with what the line of the
 // others says of it.

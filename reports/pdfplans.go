@@ -42,7 +42,11 @@ func (s *sheet) theCase() {
 	}
 	add("Animal", animal)
 	add("Family, order", p.Family+", "+p.Order)
-	add("Mass as written", asGiven(p.MassTyped))
+	mass := massWords(p.MassKg, p.MassLowKg, p.MassHighKg)
+	if typed := asGiven(p.MassTyped); typed != strings.ReplaceAll(mass, ",", "") {
+		mass += ", written as " + typed
+	}
+	add("Mass", mass)
 	add("Adults weigh", adults)
 	if p.TemperatureC != nil {
 		add("Body temperature", metabolic.FormatCelsius(metabolic.Celsius(*p.TemperatureC)))
@@ -93,6 +97,7 @@ func (s *sheet) plans() {
 		t.columns = t.columns[:4]
 	}
 	s.table(t)
+	f.keepNext()
 	r := &m.Ratios
 	f.para(plain("Patient over model: of mass, "), bold("M = "+metabolic.FormatRatio(r.Mass)), plain("; of metabolic rate, "), bold("R = "+metabolic.FormatRatio(r.Metabolic)),
 		plain("; of rate per kg, S = R/M, "), bold("S = "+metabolic.FormatRatio(r.Specific)), plain("."))
@@ -121,22 +126,32 @@ func planTable(m *dose.ModelDraft) pageTable {
 	if m.Kind == "infusion" {
 		amount = "amount per hour"
 	}
-	t := pageTable{columns: []tableColumn{{head: "plan"}, {head: "dose per kg", align: alignDecimal}, {head: amount, align: alignDecimal}, {head: "interval"}, {head: "in a day", align: alignDecimal}, {head: "average v. model's"}}}
+	t := pageTable{columns: []tableColumn{{head: "plan"}, {head: "dose per kg", align: alignDecimal}, {head: amount, align: alignDecimal}, {head: "every"}, {head: "in a day", align: alignDecimal}, {head: "average v. model's"}}}
 	for i := range m.Plans {
 		q := &m.Plans[i]
 		name, cell := planWords(q.Name), plain
 		if q.Name == m.Plan {
 			name, cell = name+" (drafted)", bold
 		}
+		if q.DosePerKg[0] != q.DosePerKg[1] {
+			t.size = sizeSmall // six columns, three of them with two numbers
+		}
 		average := averageWords(q.AverageRatio)
 		if q.Name == string(dose.PlanOnce) {
 			average = ""
 		}
+		every := intervalWords(q.Name, nil)
+		if q.IntervalH != nil {
+			every = hoursCell(*q.IntervalH)
+		}
 		row := tableRow{}
-		for _, c := range []string{name, perKgPair(q.DosePerKg, q.Unit), amountPair(q.PerAdministration, q.Unit), intervalWords(q.Name, q.IntervalH), dailyPair(q.DailyPerKg, q.Unit), average} {
+		for _, c := range []string{name, perKgPair(q.DosePerKg, q.Unit), amountPair(q.PerAdministration, q.Unit), every, strings.TrimSuffix(dailyPair(q.DailyPerKg, q.Unit), "/day"), average} {
 			row.cells = append(row.cells, []run{cell(c)})
 		}
 		t.rows = append(t.rows, row)
+	}
+	if m.Kind == "once" {
+		t.drop(map[int]bool{4: true, 5: true})
 	}
 	return t
 }

@@ -22,7 +22,7 @@ func (s *sheet) severalModels() {
 	}
 	t := pageTable{columns: []tableColumn{{head: "model"}, {head: "mass"}, {head: "kinship"}, {head: "S", align: alignDecimal}}}
 	if ws.Drafted != nil {
-		t.columns = append(t.columns, tableColumn{head: "its own dose"}, tableColumn{head: "gives"}, tableColumn{head: "nine times in ten within"})
+		t.columns = append(t.columns, tableColumn{head: "its own dose"}, tableColumn{head: "gives"}, tableColumn{head: "nine times in ten within", align: alignDecimal})
 	}
 	for i := range ws.Drafts {
 		d := &ws.Drafts[i]

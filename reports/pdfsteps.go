@@ -34,6 +34,7 @@ func (s *sheet) steps() {
 				text = "t is the patient, m the model. Results are printed to 6 figures. After a stop the reckoning ends at the ratios."
 			}
 			f.para(plain(text))
+			f.keepNext()
 		}
 		seen := map[string]int{}
 		for k := range d.Steps {

@@ -39,11 +39,13 @@ func (s *sheet) syringe() {
 		text += "; at most " + measuredWords(p.LargestPerSiteML, "mL") + " at one site"
 	}
 	f.para(plain(text + "."))
+	f.keepNext()
 	for _, x := range p.Text {
 		f.para(plain(paperText(x)))
 	}
 	if give := giveWords(p, s.unit); give != "" && s.ws.Drafted != nil {
 		f.paragraph(paraStyle{size: sizeAmount}, bold("Give "+give+"."))
+		f.keepNext()
 	}
 	s.measureTable()
 	for i := range p.Ends {
@@ -60,6 +62,11 @@ func (s *sheet) syringe() {
 	}
 }
 
+// errorCell is errorWords under a head that says what it is against.
+func errorCell(percent float64) string {
+	return strings.TrimSuffix(errorWords(percent), " than drafted")
+}
+
 // endWords says which end of a dose range something is of.
 func endWords(i, n int) string {
 	if n == 1 {
@@ -71,7 +78,7 @@ func endWords(i, n int) string {
 // measureTable is what is asked for, what is measured, and the course.
 func (s *sheet) measureTable() {
 	p := s.ws.Product
-	t := pageTable{columns: []tableColumn{{}, {head: "drafted"}, {head: "exactly"}, {head: "measured"}, {head: "holds"}, {head: "error"}, {head: "course"}, {head: "in all"}}}
+	t := pageTable{columns: []tableColumn{{}, {head: "drafted"}, {head: "exactly"}, {head: "measured"}, {head: "holds"}, {head: "error v. drafted"}, {head: "course"}, {head: "in all"}}}
 	end := func(i, n int) string { return strings.TrimSuffix(endWords(i, n), ": ") }
 	course, total := false, false
 	row := func(cells ...string) {
@@ -88,9 +95,9 @@ func (s *sheet) measureTable() {
 		a := &p.Ends[i]
 		cells := []string{end(i, len(p.Ends)), amountWords(a.AmountAsked, s.unit), metabolic.Significant(a.Exact, 4) + " " + a.Measure, "under one step", "", "", "", ""}
 		if d := a.Dilution; d != nil {
-			cells[3], cells[4], cells[5] = measuredWords(d.DrawML, "mL")+" of the dilution", amountWords(d.AmountGiven, s.unit), errorWords(d.ErrorPercent)
+			cells[3], cells[4], cells[5] = measuredWords(d.DrawML, "mL")+" of the dilution", amountWords(d.AmountGiven, s.unit), errorCell(d.ErrorPercent)
 		} else if !a.BelowStep {
-			cells[3], cells[4], cells[5] = measuredWords(a.Measured, a.Measure), amountWords(a.AmountGiven, s.unit), errorWords(a.ErrorPercent)
+			cells[3], cells[4], cells[5] = measuredWords(a.Measured, a.Measure), amountWords(a.AmountGiven, s.unit), errorCell(a.ErrorPercent)
 		}
 		if p.Days > 0 && a.Administrations > 0 {
 			cells[6] = countWord(float64(a.Administrations), "dose") + " in " + countWord(p.Days, "day")
@@ -108,7 +115,7 @@ func (s *sheet) measureTable() {
 		}
 		cells := []string{end(i, len(p.Pump)), asked, metabolic.Significant(a.ExactMLPerH, 4) + " mL/h", "under one step", "", "", "", ""}
 		if !a.BelowStep {
-			cells[3], cells[4], cells[5] = measuredWords(a.MLPerH, "mL/h"), amountWords(a.AmountPerHour, s.unit), errorWords(a.ErrorPercent)
+			cells[3], cells[4], cells[5] = measuredWords(a.MLPerH, "mL/h"), amountWords(a.AmountPerHour, s.unit), errorCell(a.ErrorPercent)
 		}
 		if p.Days > 0 && a.TotalML > 0 {
 			cells[6], cells[7] = countWord(p.Days, "day"), measuredWords(a.TotalML, "mL")+containers(a.Containers)

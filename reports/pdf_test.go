@@ -120,10 +120,19 @@ func paperExamples(t testing.TB) []example {
 	return out
 }
 
+func digestOf(t testing.TB, ws *dose.Worksheet) string {
+	t.Helper()
+	record, err := JSON(ws)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return Digest(record)
+}
+
 // sheetOf lays a worksheet out without drawing it.
 func sheetOf(t testing.TB, ws *dose.Worksheet, p Paper) (*sheet, layout) {
 	t.Helper()
-	s := newSheet(ws, p, RecordDigest(ws))
+	s := newSheet(ws, p, digestOf(t, ws))
 	s.whole()
 	_, height := p.Size()
 	l, err := s.doc.layOut(height)
@@ -223,7 +232,7 @@ func TestPDFPages(t *testing.T) {
 						t.Errorf("%s, page %d: no %q in the head: %s", e.name, i+1, want, head)
 					}
 				}
-				for _, want := range []string{"DRAFT for a licensed veterinarian's judgement. Not a prescription.", "Local law on off-label use", "tayra " + dose.Version, "record " + RecordDigest(e.ws)} {
+				for _, want := range []string{"DRAFT for a licensed veterinarian's judgement. Not a prescription.", "Local law on off-label use", "tayra " + dose.Version, "record " + digestOf(t, e.ws)} {
 					if !strings.Contains(foot, want) {
 						t.Errorf("%s, page %d: no %q in the foot: %s", e.name, i+1, want, foot)
 					}

@@ -8,7 +8,6 @@ import (
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
 
-	"tayra/dose"
 	"tayra/metabolic"
 	"tayra/species"
 )
@@ -38,7 +37,7 @@ func (s *sheet) otherBases() {
 		f.keepNext()
 		s.drawn(p, stripHeight(ws), "")
 	}
-	t := pageTable{columns: []tableColumn{{head: "basis"}, {head: "patient burns"}, {head: "model burns"}, {head: "S", align: alignDecimal}, {head: strings.TrimSpace("dose per kg " + atInterval(m)), align: alignDecimal}}}
+	t := pageTable{columns: []tableColumn{{head: "basis"}, {head: "patient burns"}, {head: "model burns"}, {head: "S", align: alignDecimal}, {head: "dose per kg", align: alignDecimal}}}
 	rate := func(w float64) string { return metabolic.FormatPower(metabolic.Power(w)) }
 	for i := range ws.Bases {
 		b := &ws.Bases[i]
@@ -73,15 +72,6 @@ func (s *sheet) otherBases() {
 		e.rows = append(e.rows, tableRow{cells: cellTexts(metabolic.FormatRatio(x.Exponent), metabolic.FormatRatio(x.Specific), perKgPair(x.DosePerKg, m.Unit), paperText(x.Remark))})
 	}
 	s.table(e)
-}
-
-// atInterval says the interval at which doses under other bases are given: the
-// model's.
-func atInterval(m *dose.ModelDraft) string {
-	if m.IntervalH == nil {
-		return ""
-	}
-	return intervalWords(m.Kind, m.IntervalH)
 }
 
 // temperatures is the draft of an ectotherm at other body temperatures.

@@ -43,7 +43,7 @@ func (s *sheet) theCase() {
 	add("Animal", animal)
 	add("Family, order", p.Family+", "+p.Order)
 	mass := massWords(p.MassKg, p.MassLowKg, p.MassHighKg)
-	if typed := asGiven(p.MassTyped); typed != strings.ReplaceAll(mass, ",", "") {
+	if typed := asGiven(p.MassTyped); strings.Contains(typed, "lb") || strings.Contains(typed, "oz") || strings.Contains(typed, "±") {
 		mass += ", written as " + typed
 	}
 	add("Mass", mass)
@@ -80,8 +80,10 @@ func (s *sheet) plans() {
 		f.para(plain("Model: " + modelName(m) + ". Source of its dose: " + m.Source + ". " + where))
 	}
 	if x := ws.DraftedFrom; x.Why != "" && len(ws.Drafts) > 1 {
+		f.keepNext()
 		f.para(plain("Chosen among the models as " + x.Why + "."))
 	}
+	f.keepNext()
 	t := pageTable{columns: []tableColumn{{}, {head: "body mass"}, {head: "metabolic rate"}, {head: "basis"}, {head: "body temperature"}}}
 	temperature := func(v *float64) string {
 		if v == nil {

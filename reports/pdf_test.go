@@ -444,6 +444,27 @@ func TestPDFOfReadRecord(t *testing.T) {
 	}
 }
 
+// A line without a case is set with its cautions, and without a dose.
+func TestFitPDF(t *testing.T) {
+	r := fittedCase(t, 4).Fit
+	table := []byte("species,mass\n")
+	b, err := FitPDF(r, FitPDFOptions{Date: "2026-12-10", Table: table})
+	if err != nil {
+		t.Fatal(err)
+	}
+	readStrictly(t, b)
+	again, err := FitPDF(r, FitPDFOptions{Date: "2026-12-10", Table: table})
+	if err != nil || !bytes.Equal(again, b) {
+		t.Errorf("another run gave other bytes (%v)", err)
+	}
+	if _, err := FitPDF(r, FitPDFOptions{}); err == nil {
+		t.Error("a sheet without a date")
+	}
+	if other, err := FitPDF(r, FitPDFOptions{Date: "2026-12-10", Paper: Letter}); err != nil || bytes.Equal(other, b) {
+		t.Errorf("the paper changes nothing (%v)", err)
+	}
+}
+
 // Powers are raised and indices lowered, where the fonts have all letters.
 func TestPaperFormula(t *testing.T) {
 	for in, want := range map[string]string{

@@ -44,6 +44,7 @@ type batchHead struct {
 	mark   byte   // in decimals that are written
 	eol    string // LF or CRLF
 	bom    bool
+	line   int
 	cells  int
 	reads  []readCell
 	fixed  dose.Row // cells that the mapping file gives for every row
@@ -78,6 +79,18 @@ func readHead(s *rowScanner, columns *BatchColumns) (*batchHead, error) {
 		h.bom = true
 		s.consume(len(byteOrderMark))
 	}
+	for { // empty lines above the header
+		for !s.eof && bytes.IndexByte(s.buf[s.start:s.end], '\n') < 0 && s.end-s.start <= s.largest {
+			s.fill()
+		}
+		line, _, ended := bytes.Cut(s.buf[s.start:s.end], []byte("\n"))
+		if !ended || len(bytes.TrimSpace(line)) > 0 {
+			break
+		}
+		s.consume(len(line) + 1)
+		s.line++
+	}
+	h.line = s.line
 	if err := h.look(s); err != nil {
 		return nil, err
 	}
@@ -97,7 +110,7 @@ func readHead(s *rowScanner, columns *BatchColumns) (*batchHead, error) {
 		return nil, err // the reader's: the head was there a moment ago
 	}
 	if first.fault != noFault {
-		return nil, &TableError{1, "the quotes in the header are broken", "write each heading once, in quotes as a whole or not at all"}
+		return nil, &TableError{h.line, "the quotes in the header are broken", "write each heading once, in quotes as a whole or not at all"}
 	}
 	if first.crlf {
 		h.eol = "\r\n"
@@ -107,11 +120,8 @@ func readHead(s *rowScanner, columns *BatchColumns) (*batchHead, error) {
 
 // look refuses what is no such text at all.
 func (h *batchHead) look(s *rowScanner) error {
-	for !s.eof && bytes.IndexByte(s.buf[s.start:s.end], '\n') < 0 && s.end-s.start <= s.largest {
-		s.fill()
-	}
 	data := s.buf[s.start:s.end]
-	if s.eof && s.err != nil {
+	if s.eof && s.err != nil && bytes.IndexByte(data, '\n') < 0 {
 		return s.err
 	}
 	if len(bytes.TrimSpace(data)) == 0 && s.eof {
@@ -121,15 +131,15 @@ func (h *batchHead) look(s *rowScanner) error {
 	line = bytes.TrimSuffix(line, []byte("\r"))
 	switch {
 	case !ended && len(data) > s.largest:
-		return &TableError{1, fmt.Sprintf("the first line is over %d bytes long", s.largest), "is it a table?"}
+		return &TableError{h.line, fmt.Sprintf("the first line is over %d bytes long", s.largest), "is it a table?"}
 	case bytes.HasPrefix(data, []byte("PK\x03\x04")):
 		return &TableError{0, "this is a spreadsheet file or another archive, not a table as text", "save the sheet as CSV, in UTF-8"}
 	case bytes.HasPrefix(data, []byte("\xFF\xFE")) || bytes.HasPrefix(data, []byte("\xFE\xFF")) || bytes.IndexByte(line, 0) >= 0:
-		return &TableError{1, "the table is UTF-16 text or no text", "save it as CSV in UTF-8"}
+		return &TableError{h.line, "the table is UTF-16 text or no text", "save it as CSV in UTF-8"}
 	case !utf8.Valid(line):
-		return &TableError{1, "the header is not UTF-8 text", "save the table as CSV in UTF-8"}
+		return &TableError{h.line, "the header is not UTF-8 text", "save the table as CSV in UTF-8"}
 	case bytes.IndexByte(line, '\r') >= 0 && !ended:
-		return &TableError{1, "lines end in a carriage return alone", "save the table with line ends of Unix or Windows"}
+		return &TableError{h.line, "lines end in a carriage return alone", "save the table with line ends of Unix or Windows"}
 	}
 	return nil
 }
@@ -162,7 +172,7 @@ func (h *batchHead) read(row []byte, columns *BatchColumns) error {
 	cells := splitCells(row, h.comma, nil)
 	h.cells = len(cells)
 	if h.cells > mostColumns {
-		return &TableError{1, fmt.Sprintf("%d columns", h.cells), fmt.Sprintf("at most %d are read", mostColumns)}
+		return &TableError{h.line, fmt.Sprintf("%d columns", h.cells), fmt.Sprintf("at most %d are read", mostColumns)}
 	}
 	first := map[string]int{} // heading as compared: its column, from 1
 	var have [64]bool
@@ -171,11 +181,11 @@ func (h *batchHead) read(row []byte, columns *BatchColumns) error {
 		typed := strings.TrimSpace(string(value))
 		name := sameHeading(typed)
 		if at, ok := first[name]; ok && name != "" {
-			return &TableError{1, fmt.Sprintf("two columns are called %s: number %d and number %d", strconv.Quote(typed), at, i+1), "rename or delete one of them"}
+			return &TableError{h.line, fmt.Sprintf("two columns are called %s: number %d and number %d", strconv.Quote(typed), at, i+1), "rename or delete one of them"}
 		}
 		first[name] = i + 1
 		if slices.Contains(resultColumns, name) {
-			return &TableError{1, fmt.Sprintf("column %d is called %s, which is a column that is written", i+1, strconv.Quote(typed)), "rename or delete it"}
+			return &TableError{h.line, fmt.Sprintf("column %d is called %s, which is a column that is written", i+1, strconv.Quote(typed)), "rename or delete it"}
 		}
 		column, ok := columns.find(typed)
 		if !ok {
@@ -192,7 +202,7 @@ func (h *batchHead) read(row []byte, columns *BatchColumns) error {
 			h.fixed[column] = []byte(rule.value)
 			have[column] = true
 		case rule.heading != "" && !have[column]:
-			return &TableError{1, fmt.Sprintf("no column is called %s, which the mapping names for %s", strconv.Quote(rule.heading), column), "write the heading as it stands in the table"}
+			return &TableError{h.line, fmt.Sprintf("no column is called %s, which the mapping names for %s", strconv.Quote(rule.heading), column), "write the heading as it stands in the table"}
 		}
 	}
 	var missing []string
@@ -231,7 +241,7 @@ func (h *batchHead) lacking(missing []string, row []byte) error {
 	}
 	if len(h.reads) == 0 {
 		const most = 60
-		return &TableError{1, "there is no header: the first row has no column that is known here (" + strconv.Quote(cut(string(row), most)) + ")",
+		return &TableError{h.line, "there is no header: the first row has no column that is known here (" + strconv.Quote(cut(string(row), most)) + ")",
 			"write the names of the columns above the animals; needed are " + strings.Join(required, ", ") + "; for other headings see --columns"}
 	}
 	problem := "column " + missing[0] + " is missing"
@@ -242,7 +252,7 @@ func (h *batchHead) lacking(missing []string, row []byte) error {
 	if len(h.passed) > 0 {
 		remedy += "; for other headings see --columns"
 	}
-	return &TableError{1, problem, remedy}
+	return &TableError{h.line, problem, remedy}
 }
 
 // write makes the header of the result.

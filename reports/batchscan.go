@@ -71,7 +71,7 @@ func (s *rowScanner) next() (rawRow, error) {
 	q := quoting{comma: s.comma, firstEnd: -1}
 	for {
 		data := s.buf[s.start:s.end]
-		done := q.advance(data, s.eof)
+		done := q.advance(data, s.eof && s.err == nil) // what an error cut off is no row
 		switch {
 		case done && q.fault == noFault:
 			return s.hand(data, q.end, q.next, q.lines), nil
@@ -86,10 +86,7 @@ func (s *rowScanner) next() (rawRow, error) {
 				row, _ := s.firstLine(data, &q)
 				return row, nil
 			}
-		case s.eof && len(data) == 0:
-			if s.err != nil {
-				return rawRow{}, s.err
-			}
+		case s.eof && s.err == nil && len(data) == 0:
 			return rawRow{}, io.EOF
 		}
 		if len(data) > s.largest {
@@ -117,12 +114,13 @@ func (s *rowScanner) hand(data []byte, end, next, lines int) rawRow {
 // firstLine gives out the first line of a row whose quoting is broken. It says
 // false when the end of that line has not been read.
 func (s *rowScanner) firstLine(data []byte, q *quoting) (rawRow, bool) {
-	end := q.firstEnd
+	end, cell := q.firstEnd, q.firstCell
 	if end < 0 {
+		cell = q.cell
 		end = bytes.IndexByte(data, '\n')
 	}
 	switch {
-	case end < 0 && !s.eof:
+	case end < 0 && (!s.eof || s.err != nil):
 		return rawRow{}, false
 	case end < 0:
 		end = len(data)
@@ -132,7 +130,7 @@ func (s *rowScanner) firstLine(data []byte, q *quoting) (rawRow, bool) {
 		end--
 	}
 	row := s.hand(data, end, next, 1)
-	row.fault, row.faultAt = badQuote, min(q.cell, end)
+	row.fault, row.faultAt = badQuote, min(cell, end)
 	return row, true
 }
 
@@ -199,10 +197,13 @@ type quoting struct {
 	cell     int // where the cell begins
 	state    quoteState
 	lines    int
-	firstEnd int // of the first line end, -1 if none was met
-	end      int // of the row
-	next     int // of the next one
-	fault    rowFault
+	// The first line end, if it stands within quotes, and where the cell
+	// around it begins; -1 if none was met.
+	firstEnd, firstCell int
+
+	end   int // of the row
+	next  int // of the next one
+	fault rowFault
 }
 
 type quoteState uint8
@@ -251,7 +252,7 @@ func (q *quoting) advance(data []byte, eof bool) bool {
 			case '\n':
 				q.lines++
 				if q.firstEnd < 0 {
-					q.firstEnd = q.at
+					q.firstEnd, q.firstCell = q.at, q.cell
 				}
 			}
 		case afterQuote:
@@ -283,6 +284,9 @@ func (q *quoting) advance(data []byte, eof bool) bool {
 		return q.broken()
 	}
 	q.end, q.next, q.lines = len(data), len(data), q.lines+1
+	if data[q.end-1] == '\r' {
+		q.end--
+	}
 	return true
 }
 

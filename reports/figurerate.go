@@ -65,9 +65,19 @@ func ratePlot(class string, lines []rateLineDrawn, marks []rateMark) *plot.Plot 
 	logAxis(&p.Y, lowB/1.5, highB*6) // room for the key
 	p.Add(drawing(func(c draw.Canvas, p *plot.Plot) {
 		tx, ty := p.Transforms(&c)
+		// One path for all: a class has up to a thousand.
+		const r = vg.Length(1.1)
+		path := make(vg.Path, 0, 5*len(pts))
 		for _, q := range pts {
-			c.DrawGlyph(draw.GlyphStyle{Color: grey, Radius: vg.Points(1.2), Shape: draw.RingGlyph{}}, vg.Point{X: tx(q.X), Y: ty(q.Y)})
+			x, y := tx(q.X), ty(q.Y)
+			path.Move(vg.Point{X: x - r, Y: y})
+			path.Line(vg.Point{X: x, Y: y + r})
+			path.Line(vg.Point{X: x + r, Y: y})
+			path.Line(vg.Point{X: x, Y: y - r})
+			path.Close()
 		}
+		c.SetColor(grey)
+		c.Fill(path)
 	}))
 	var keys []key
 	for _, l := range lines {

@@ -125,7 +125,7 @@ func (s *sheet) rates() {
 	}
 	patient := animalWords(ws.Patient.CommonName, ws.Patient.Species)
 	marks := []rateMark{{name: at("patient: "+patient, ws.Patient.TemperatureC), mass: ws.Patient.MassKg, watt: ws.Patient.RateW, bold: true}}
-	caption := "Rings: the measured animals of the class " + ws.Patient.Class + ". Filled: the rates used"
+	caption := "Dots: the measured animals of the class " + ws.Patient.Class + ". Marks: the rates used"
 	other := ""
 	if m.Class == ws.Patient.Class {
 		marks = append(marks, rateMark{name: at("model: "+modelName(m), m.TemperatureC), mass: m.MassKg, watt: m.RateW})

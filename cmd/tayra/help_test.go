@@ -64,6 +64,7 @@ func TestExamplesRun(t *testing.T) {
 				write(t, folder, "case.yaml", template)
 			}
 			write(t, folder, "check.yaml", proposing)
+			write(t, folder, "animals.csv", animalsTable)
 			if c.Annotations[runsOn] != "" {
 				for line := range strings.SplitSeq(c.Example, "\n") {
 					interrupt(t, folder, line)

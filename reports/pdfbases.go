@@ -66,7 +66,7 @@ func (s *sheet) otherBases() {
 	if len(ws.Exponents) == 0 {
 		return
 	}
-	e := pageTable{columns: []tableColumn{{head: "exponent", align: alignDecimal}, {head: "S", align: alignDecimal}, {head: "dose per kg", align: alignDecimal}, {head: "of the group constants; whose"}}}
+	e := pageTable{columns: []tableColumn{{head: "exponent", align: alignDecimal}, {head: "S", align: alignDecimal}, {head: "dose per kg", align: alignDecimal}, {head: "of the group constants"}}}
 	for i := range ws.Exponents {
 		x := &ws.Exponents[i]
 		e.rows = append(e.rows, tableRow{cells: cellTexts(metabolic.FormatRatio(x.Exponent), metabolic.FormatRatio(x.Specific), perKgPair(x.DosePerKg, m.Unit), paperText(x.Remark))})

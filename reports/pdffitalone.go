@@ -50,7 +50,6 @@ func FitPDF(r *dose.FitRecord, o FitPDFOptions) ([]byte, error) {
 		f.split(paraStyle{size: sizeSmall, gap: -1}, []run{bold("A line, no dose. Not a prescription.")}, []run{plain(producer())})
 		f.split(paraStyle{size: sizeSmall, gap: -1}, []run{plain("For a licensed veterinarian's judgement.")}, []run{plain("record " + Digest(record))})
 	}
-	s.fittedLine(r)
 	d.body.heading("Cautions: " + countWords(r.Cautions))
 	for i := range r.Cautions {
 		s.caution(&r.Cautions[i])
@@ -58,6 +57,7 @@ func FitPDF(r *dose.FitRecord, o FitPDFOptions) ([]byte, error) {
 	if len(r.Cautions) > 0 {
 		d.body.paragraph(paraStyle{gap: 3}, plain("A caution that is not raised is no evidence of safety."))
 	}
+	s.fittedLine(r)
 	for i := range r.Others {
 		s.fittedLine(&r.Others[i])
 	}

@@ -9,7 +9,7 @@ import (
 // How many letters of a typed text the head and the foot show. The whole text
 // stands in the body; a margin that grew with it would leave no page.
 const (
-	headLetters = 48
+	headLetters = 40
 	footLetters = 200
 	mostReasons = 4 // overrides whose reason the foot shows
 )

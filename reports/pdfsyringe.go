@@ -19,7 +19,7 @@ func (s *sheet) syringe() {
 	if p.AmountPerPiece > 0 {
 		text += " per " + p.Form
 	}
-	if typed := asGiven(p.StrengthTyped); typed != "" && typed != strings.ReplaceAll(strengthWords(p, s.unit), ",", "") && typed != strengthWords(p, s.unit) {
+	if typed := asGiven(p.StrengthTyped); typed != "" && "Product: "+typed != strings.ReplaceAll(text, ",", "") {
 		text += " (given as " + typed + ")"
 	}
 	switch {
@@ -93,7 +93,7 @@ func (s *sheet) measureTable() {
 	}
 	for i := range p.Ends {
 		a := &p.Ends[i]
-		cells := []string{end(i, len(p.Ends)), amountWords(a.AmountAsked, s.unit), metabolic.Significant(a.Exact, 4) + " " + a.Measure, "under one step", "", "", "", ""}
+		cells := []string{end(i, len(p.Ends)), amountWords(a.AmountAsked, s.unit), exactWords(a.Exact, a.Measure), "under one step", "", "", "", ""}
 		if d := a.Dilution; d != nil {
 			cells[3], cells[4], cells[5] = measuredWords(d.DrawML, "mL")+" of the dilution", amountWords(d.AmountGiven, s.unit), errorCell(d.ErrorPercent)
 		} else if !a.BelowStep {

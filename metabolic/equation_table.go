@@ -36,26 +36,65 @@ var equations = sync.OnceValue(func() []*Equation {
 // are shared and must not be changed.
 func Equations() []*Equation { return slices.Clone(equations()) }
 
-// FindEquation gives the line with an id.
+// FindEquation gives the line with an id. It reads that row alone, since most
+// drafts need one or two of the table.
 func FindEquation(id string) (*Equation, bool) {
-	for _, e := range equations() {
-		if e.ID == id {
-			return e, true
-		}
+	if e, ok := equationRows.Load(id); ok {
+		return e.(*Equation), true
 	}
-	return nil, false
+	if strings.ContainsAny(id, ",\"\n") {
+		return nil, false
+	}
+	_, rest, ok := strings.Cut(equationsCSV, "\n"+id+",")
+	if !ok {
+		return nil, false
+	}
+	row, _, _ := strings.Cut(rest, "\n")
+	record, err := csv.NewReader(strings.NewReader(id + "," + row)).Read()
+	if err != nil || len(record) != len(equationColumns) {
+		panic("metabolic: data/equations.csv: " + id) // embedded: a test reads every row before it ships
+	}
+	e, err := equationRow(record)
+	if err != nil {
+		panic("metabolic: data/equations.csv: " + err.Error())
+	}
+	kept, _ := equationRows.LoadOrStore(id, e)
+	return kept.(*Equation), true
+}
+
+var equationRows sync.Map // id → *Equation, of the rows that were asked for
+
+// defaultEquations are the ids of the column default_for, held by a test
+// against the table.
+var defaultEquations = map[string]string{
+	"placental mammal":         "kleiber1947",
+	"marsupial":                "dawsonhulbert1970",
+	"passerine bird":           "ap1970_pass_rest",
+	"non-passerine bird":       "ap1970_nonpass_rest",
+	"squamate":                 "ap1985_standard",
+	"chelonian":                "bd1976_turtle20",
+	"crocodilian":              "bd1976_reptile20",
+	"tuatara":                  "bd1976_reptile20",
+	"frog":                     "gillooly2001_amphibian",
+	"salamander":               "gillooly2001_amphibian",
+	"caecilian":                "gillooly2001_amphibian",
+	"Zaglossus":                "monotreme_zaglossus", // the genus
+	"Tachyglossus aculeatus":   "monotreme_tachyglossus",
+	"Ornithorhynchus anatinus": "monotreme_ornithorhynchus",
 }
 
 // DefaultEquation gives the published line that is used for an animal when
 // none is named: for a group of [Groups], or, since each monotreme has its own
 // line only, for a monotreme's scientific name.
 func DefaultEquation(group string) (*Equation, bool) {
-	for _, e := range equations() {
-		if covers(e.DefaultFor, group, group) {
-			return e, true
+	id, ok := defaultEquations[group]
+	if !ok {
+		genus, _, _ := strings.Cut(group, " ")
+		if id, ok = defaultEquations[genus]; !ok {
+			return nil, false
 		}
 	}
-	return nil, false
+	return FindEquation(id)
 }
 
 func readEquations(r io.Reader) ([]*Equation, error) {
@@ -85,8 +124,18 @@ func readEquations(r io.Reader) ([]*Equation, error) {
 	}
 }
 
+// equationColumn is where a column stands.
+var equationColumn = sync.OnceValue(func() map[string]int {
+	at := make(map[string]int, len(equationColumns))
+	for i, c := range equationColumns {
+		at[c] = i
+	}
+	return at
+})
+
 func equationRow(record []string) (*Equation, error) {
-	cell := func(column string) string { return record[slices.Index(equationColumns, column)] }
+	columns := equationColumn()
+	cell := func(column string) string { return record[columns[column]] }
 	var failed error
 	number := func(column string) float64 {
 		if cell(column) == "" {

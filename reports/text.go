@@ -359,7 +359,8 @@ func (t *terminal) proposed(ws *dose.Worksheet) {
 	}
 }
 
-// foot says what every page of the paper says, and which record this is.
+// foot says what every page of the paper says. The digest of the record stands
+// on paper only: the terminal keeps no record that it could name.
 func (t *terminal) foot(ws *dose.Worksheet) {
 	t.blank()
 	t.line(words{styleFaint, strings.Repeat("─", t.width)})
@@ -372,9 +373,6 @@ func (t *terminal) foot(ws *dose.Worksheet) {
 	s := ws.Program.Name + " " + ws.Program.Version
 	if ws.Program.Tables != "" {
 		s += ", tables " + ws.Program.Tables
-	}
-	if record, err := JSON(ws); err == nil {
-		s += ", record " + Digest(record)
 	}
 	t.faint(0, s)
 }

@@ -1,6 +1,6 @@
 // How a drug's name is read for the hazard table: by the names that the
 // table's own lists know, salts and forms of preparation let off, both halves
-// of a combination, the ending of an international nonproprietary name, and
+// of a combination, the stem of an international nonproprietary name, and
 // last by near spelling. It only ever adds a hazard to be looked at; it never
 // decides what a drug is.
 
@@ -43,17 +43,19 @@ type reading struct {
 	how         certainty
 	via         string // as HazardMatch.Via
 	meant       string // bySpelling: the name that it is near to
+	misspelt    bool   // bySpelling: a class was meant, not a drug
+	asClass     bool   // it stands in the class, not in the name
 }
 
 // mostSpellings is how many unknown words of a case are compared with every
 // name in the lists; known names are found however long the text is.
 const mostSpellings = 32
 
-// readDrug reads the drug and the class of a case.
-func readDrug(drug, class string) []reading {
-	var out []reading
+// readDrug reads the drug and the class of a case. Unread are the parts of the
+// drug's name of which nothing was read, but for a near spelling.
+func readDrug(drug, class string) (out []reading, unread []string) {
 	spellings := mostSpellings
-	for _, text := range []string{drug, class} {
+	for i, text := range []string{drug, class} {
 		tokens := fold.Tokens(text)
 		for len(tokens) > 0 {
 			part := tokens
@@ -62,10 +64,18 @@ func readDrug(drug, class string) []reading {
 			} else {
 				tokens = nil
 			}
+			from := len(out)
 			out = readPart(out, part, &spellings)
+			for k := from; k < len(out); k++ {
+				out[k].asClass = i == 1
+			}
+			read := slices.ContainsFunc(out[from:], func(r reading) bool { return r.how < bySpelling })
+			if i == 0 && !read && slices.ContainsFunc(part, otherDrug) {
+				unread = append(unread, strings.Join(part, " "))
+			}
 		}
 	}
-	return out
+	return out, unread
 }
 
 // readPart reads one half of a combination. The longest run of words that is
@@ -98,8 +108,12 @@ func readPart(out []reading, words []string, spellings *int) []reading {
 			i += n
 			continue
 		}
+		if words[i] == "non" { // "non-opioid" is no opioid
+			i += 1 + longestName(words[i+1:])
+			continue
+		}
 		if w := words[i]; otherDrug(w) {
-			out = endingReadings(out, w)
+			out = stemReadings(out, w)
 			unknown = append(unknown, w)
 		}
 		i++
@@ -116,14 +130,29 @@ func readPart(out []reading, words []string, spellings *int) []reading {
 	return out
 }
 
+// longestName is how many of the words, from the first on, are the name of a
+// class; 0 if none are.
+func longestName(words []string) int {
+	for n := min(5, len(words)); n > 0; n-- {
+		if _, ok := lookUp(drugClassesIndex, strings.Join(words[:n], "")); ok {
+			return n
+		}
+	}
+	return 0
+}
+
 // otherDrug reports whether a word is more than a form or salt.
 func otherDrug(w string) bool { return !preparation[w] && !salt[w] && !isNumber(w) }
 
-// lookUp finds a key, a plural s let off.
+// lookUp finds a key, a plural s or a strength that is run together with it
+// ("ivermectin1%") let off.
 func lookUp(index, key string) (string, bool) {
 	l, ok := line(index, key)
 	if !ok && len(key) > 4 && strings.HasSuffix(key, "s") {
 		l, ok = line(index, key[:len(key)-1])
+	}
+	if bare := strings.TrimRight(key, "0123456789"); !ok && len(bare) > 4 && len(bare) < len(key) {
+		l, ok = line(index, bare)
 	}
 	return l, ok
 }
@@ -163,12 +192,19 @@ func classReadings(out []reading, l string) []reading {
 	return out
 }
 
-// endingReadings reads the class from the ending that such a class's
-// international nonproprietary names share.
-func endingReadings(out []reading, word string) []reading {
+// stemReadings reads the class from the stem that such a class's international
+// nonproprietary names share, at their end or their beginning.
+func stemReadings(out []reading, word string) []reading {
 	for r := range records(drugStemsTable) {
-		if ending := r[0]; len(word) > len(ending)+1 && strings.HasSuffix(word, ending) {
-			out = append(out, reading{class: r[1], how: byEnding, via: "class " + r[1] + ", by the ending -" + ending})
+		at, stem, class := r[0], r[1], r[2]
+		if len(word) < len(stem)+2 {
+			continue
+		}
+		switch {
+		case at == "end" && strings.HasSuffix(word, stem):
+			out = append(out, reading{class: class, how: byEnding, via: "class " + class + ", by the ending -" + stem})
+		case at == "start" && strings.HasPrefix(word, stem):
+			out = append(out, reading{class: class, how: byEnding, via: "class " + class + ", by the beginning " + stem + "-"})
 		}
 	}
 	return out
@@ -178,37 +214,69 @@ func endingReadings(out []reading, word string) []reading {
 type nearName struct {
 	key     string
 	letters uint32 // one bit a letter
+	sound   string
 	line    string
 	class   bool
 }
 
-// nearNames are the names of drugs and classes that the hazard table is about,
-// but for the shortest, which too many words are near to.
-var nearNames = sync.OnceValue(func() []nearName {
-	var out []nearName
+// nearNames are the names of drugs and classes to which a near spelling is
+// looked for, but for the shortest, which too many words are near to: those
+// that the hazard table is about, and those that only have a trait.
+var nearNames = sync.OnceValue(func() (out struct{ hazard, trait []nearName }) {
 	for i, index := range []string{drugsIndex, drugClassesIndex} {
 		for l := range lines(index) {
 			key, _, _ := strings.Cut(l, "\t")
-			if strings.HasSuffix(l, "\thazard") && len(key) >= 6 {
-				out = append(out, nearName{key, letters(key), l, i == 1})
+			if len(key) < 6 {
+				continue
+			}
+			n := nearName{key, letters(key), soundOf(key), l, i == 1}
+			switch {
+			case strings.HasSuffix(l, "\thazard"):
+				out.hazard = append(out.hazard, n)
+			case strings.HasSuffix(l, "\ttrait"):
+				out.trait = append(out.trait, n)
 			}
 		}
 	}
 	return out
 })
 
-// nearReadings adds what a word is within one slip of (under eight letters) or two.
+// nearReadings adds what a word is near to: within one slip (under eight
+// letters) or two, written by ear, or run together with another word.
 func nearReadings(out []reading, word string) []reading {
 	if len(word) < 5 || len(word) > fold.MaxBytes {
 		return out
 	}
+	for _, names := range [][]nearName{nearNames().hazard, nearNames().trait} {
+		for _, n := range nearest(word, names) {
+			var read []reading
+			var written string
+			if n.class {
+				read = classReadings(nil, n.line)
+				written = strings.Split(n.line, "\t")[1]
+			} else {
+				e := parseDrug(n.line)
+				read, written = e.readings(nil, n.key), e.written
+			}
+			for _, r := range read {
+				r.how, r.via, r.meant, r.misspelt = bySpelling, "near spelling", written, n.class
+				out = append(out, r)
+			}
+		}
+	}
+	return out
+}
+
+// nearest are the names that a word is nearest to, within one slip or two;
+// where there are none, those that sound like it or stand in it.
+func nearest(word string, names []nearName) []nearName {
 	limit := 1
 	if len(word) >= 8 {
 		limit = 2
 	}
-	mask := letters(word)
 	var hits []nearName
-	for _, n := range nearNames() {
+	mask := letters(word)
+	for _, n := range names {
 		// A slip changes two letters of the alphabet at most.
 		if bits.OnesCount32(mask^n.letters) > 2*limit {
 			continue
@@ -220,22 +288,19 @@ func nearReadings(out []reading, word string) []reading {
 			hits = append(hits, n)
 		}
 	}
-	for _, n := range hits {
-		var read []reading
-		var written string
-		if n.class {
-			read = classReadings(nil, n.line)
-			written = strings.Split(n.line, "\t")[1]
-		} else {
-			e := parseDrug(n.line)
-			read, written = e.readings(nil, n.key), e.written
-		}
-		for _, r := range read {
-			r.how, r.via, r.meant = bySpelling, "near spelling", written
-			out = append(out, r)
+	if len(hits) > 0 || len(word) < soundLetters {
+		return hits
+	}
+	sound := soundOf(word)
+	for _, n := range names {
+		// A name inside a longer word is two names run together, or the name
+		// of a derivative.
+		if len(n.key) >= soundLetters && (n.sound == sound || strings.Contains(word, n.key)) {
+			hits = append(hits, n)
 		}
 	}
-	return out
+	slices.SortStableFunc(hits, func(a, b nearName) int { return len(b.key) - len(a.key) })
+	return hits
 }
 
 // letters has a bit for each letter of the alphabet in a word, and one for

@@ -205,6 +205,10 @@ func TestMatchHazardsNames(t *testing.T) {
 		{"ronidazole", "", "cattle", "PO", "h086", "class nitroimidazole"},
 		{"unheardofcillin", "", "rabbit", "PO", "h071", "class penicillin, by the ending -cillin"},
 		{"newfloxacin", "", "dog", "PO", "h089", "class fluoroquinolone, by the ending -floxacin"},
+		{"demoxacin", "", "dog", "PO", "h089", "class fluoroquinolone, by the ending -oxacin"},
+		{"cefsampl", "", "golden hamster", "SC", "h079", "class cephalosporin, by the beginning cef-"},
+		{"ivermectin1%", "", "Greek tortoise", "SC", "h001", "drug name"},
+		{"co-codamol", "", "cat", "PO", "h033", "drug name"},
 		{"samplazole", "NSAIDs", "chicken", "", "h018", "class NSAID"},
 		{"samplazole", "non-steroidal anti-inflammatory", "chicken", "", "h018", "class NSAID"},
 		{"samplazole", "Nonsteroidal anti-inflammatory drugs", "chicken", "", "h018", "class NSAID"},
@@ -247,6 +251,12 @@ func TestMatchHazardsMisspelt(t *testing.T) {
 		{"enroflaxacin", "cat", "h041", "enrofloxacin"},
 		{"iver mectn", "Greek tortoise", "h001", "ivermectin"},
 		{"chlindamycin", "rabbit", "h072", "clindamycin"},
+		{"asetaminofen", "cat", "h033", "acetaminophen"}, // by ear
+		{"acetominafen", "cat", "h033", "acetaminophen"},
+		{"eevermektin", "Greek tortoise", "h001", "ivermectine"},
+		{"fenbendazolepraziquantel", "pigeon", "h019", "fenbendazole"}, // two names run together
+		{"etorfeen", "white rhinoceros", "h082", "etorfin"},
+		{"carfentinall", "lion", "h082", "carfentanil"},
 	} {
 		a := found(t, tt.animal)
 		m, ok := matchOf(MatchHazards(tt.drug, "", a, ""), tt.id)
@@ -263,7 +273,6 @@ func TestMatchHazardsSilent(t *testing.T) {
 	for _, tt := range []struct{ drug, class, animal, route string }{
 		{"examplicillin", "penicillin", "giant anteater", "SC"},
 		{"examplicillin", "penicillin", "dog", "PO"},
-		{"demoxacin", "", "dog", "PO"},
 		{"samplazole", "", "cat", "PO"},
 		{"dexamethasone sodium phosphate", "", "cat", "PO"}, // a salt, no enema
 		{"amoxicillin", "", "rabbit", "SC"},                 // the row is about oral penicillins
@@ -293,7 +302,7 @@ func TestMatchHazardsRelation(t *testing.T) {
 		{"paracetamol", "rabbit", "h033", "", ""},             //
 		{"diclofenac", "golden eagle", "h010", "relative", "family"},
 		{"diclofenac", "osprey", "h010", "relative", "order"},
-		{"diclofenac", "osprey", "h011", "", ""},                     // a species row reaches its family only
+		{"diclofenac", "osprey", "h011", "relative", "order"},        //
 		{"diclofenac", "golden eagle", "h011", "relative", "family"}, //
 		{"ivermectin", "coyote", "h032", "", ""},                     // a breed's gene is nobody else's
 		{"thiopental", "red fox", "h049", "", ""},                    //
@@ -367,17 +376,42 @@ func TestMatchHazardsOrder(t *testing.T) {
 
 func TestReadRoute(t *testing.T) {
 	for text, want := range map[string]routes{
-		"": 0, "SC": parenteral, "s.c.": parenteral, "subcutaneously": parenteral, "sub-cutaneous": parenteral, "SQ": parenteral,
-		"IM": parenteral, "deep intramuscular": parenteral, "intra-muscular": parenteral, "IM injection": parenteral, "IM or SC": parenteral, "IM/SC": parenteral,
-		"IV": parenteral | intravenous, "slow i.v.": parenteral | intravenous, "IV CRI": parenteral | intravenous, "injection": parenteral | intravenous,
-		"IO": parenteral | intravenous, "intracardiac": parenteral | intravenous, "IC": parenteral | intravenous, "ICe": parenteral, "intracoelomic": parenteral,
-		"PO": oral, "p.o.": oral, "per os": oral, "by mouth": oral, "gavage": oral, "in feed": oral, "in the drinking water": oral, "stomach tube": oral,
-		"topical": topical, "spot-on": topical, "pour-on": topical, "transdermal": topical, "bath": topical,
+		"": 0, "SC": intoSC, "s.c.": intoSC, "s/c": intoSC, "subcutaneously": intoSC, "sub-cutaneous": intoSC, "sub-q": intoSC, "SQ": intoSC,
+		"IM": intoIM, "i/m": intoIM, "deep intramuscular": intoIM, "intra-muscular": intoIM, "IM injection": intoIM, "IM twice daily": intoIM, "dart": intoIM,
+		"IM or SC": intoIM | intoSC, "IM/SC": intoIM | intoSC,
+		"IV": byVein, "slow i.v.": byVein, "IV CRI": byVein, "injection": byVein, "IO": byVein, "intracardiac": byVein,
+		"IC": byVein, "ICe": intoIP, "intracoelomic": intoIP, "ip": intoIP,
+		"PO": oral, "p.o.": oral, "P O": oral, "p/o": oral, "PO q12h": oral, "per os": oral, "by mouth": oral, "by mouth with food": oral, "oral gavage": oral,
+		"in feed": oral, "in the drinking water": oral, "stomach tube": oral, "NG tube": oral, "tablet": oral, "intragastric": oral,
+		"topical": topical, "spot-on": topical, "pour-on": topical, "transdermal": topical, "bath": inWater,
 		"inhaled": inhaled, "nebulisation": inhaled, "by mask": inhaled, "rectal": rectal, "enema": rectal,
-		"SC or PO": parenteral | oral, "IV then oral": 0, "intramammary": 0, "by some way": 0, "??": 0, "слово": 0,
+		"SC or PO": intoSC | oral, "IV then oral": byVein | oral,
 	} {
-		if got := readRoute(text); got != want {
-			t.Errorf("readRoute(%q) = %b, want %b", text, got, want)
+		if got := ReadRoute(text); got.ways != want || !got.all && text != "" {
+			t.Errorf("ReadRoute(%q) = %b, all understood: %v; want %b", text, got.ways, got.all, want)
+		}
+	}
+	// What is not understood rules nothing out, whatever stands beside it.
+	for text, oral := range map[string]bool{"intramammary": false, "by some way": false, "??": false, "слово": false, "PO by some way": true, "syringe-fed": true} {
+		got := ReadRoute(text)
+		if got.Oral() != oral || got.Same(got) {
+			t.Errorf("ReadRoute(%q) = %b, all understood: %v", text, got.ways, got.all)
+		}
+		for _, way := range []string{"any", "oral", "parenteral", "intravenous", "topical", "inhaled", "rectal"} {
+			if !got.admits(way) {
+				t.Errorf("%q rules %s out", text, way)
+			}
+		}
+	}
+	for _, tt := range []struct {
+		a, b string
+		same bool
+	}{
+		{"SC", "s.c.", true}, {"SC", "IM", false}, {"PO", "by mouth with food", true}, {"IV", "IO", true}, {"SC", "SC or IM", false},
+		{"", "", false}, {"intramammary", "intramammary", false},
+	} {
+		if got := ReadRoute(tt.a).Same(ReadRoute(tt.b)); got != tt.same {
+			t.Errorf("%q and %q: same %v", tt.a, tt.b, got)
 		}
 	}
 }
@@ -386,7 +420,7 @@ func TestReadRoute(t *testing.T) {
 // lost, doubled or swapped with the next.
 func TestHazardNamesSurviveASlip(t *testing.T) {
 	var names []nearName
-	for _, n := range nearNames() {
+	for _, n := range nearNames().hazard {
 		if !n.class && len(n.key) >= 6 {
 			names = append(names, n)
 		}
@@ -406,7 +440,8 @@ func TestHazardNamesSurviveASlip(t *testing.T) {
 			b[i], b[i+1] = b[i+1], b[i]
 		}
 		drugs := make(map[string]bool)
-		for _, r := range readDrug(string(b), "") {
+		read, _ := readDrug(string(b), "")
+		for _, r := range read {
 			drugs[r.drug] = true
 		}
 		// The slip may have made another name or word of it.
@@ -432,7 +467,8 @@ func TestDrugNames(t *testing.T) {
 		}
 	}
 	has := func(text, drug, class string) {
-		for _, r := range readDrug(text, "") {
+		read, _ := readDrug(text, "")
+		for _, r := range read {
 			if r.how < bySpelling && (drug != "" && r.drug == drug || class != "" && r.class == class) {
 				return
 			}
@@ -457,7 +493,11 @@ func TestDrugNames(t *testing.T) {
 		}
 	}
 	for _, r := range table(t, "drug-stems.csv") {
-		has("sampl"+r["ending"], "", r["classes"])
+		word := "sampl" + r["stem"]
+		if r["at"] == "start" {
+			word = r["stem"] + "sampl"
+		}
+		has(word, "", r["classes"])
 	}
 	for _, r := range table(t, "hazards.csv") {
 		if r["drug"] != "" && !strings.Contains("; "+classesOf[canonicalDrug(r["drug"])]+";", "; "+r["drug_class"]+";") {
@@ -470,7 +510,7 @@ func TestDrugNames(t *testing.T) {
 func TestCandidatesAreForgotten(t *testing.T) {
 	for i := range 3 * rememberAtMost {
 		name := "samplazole " + strings.Repeat("a", i%100) + string(rune('a'+i%26)) + strings.Repeat("b", i/100)
-		candidatesOf(name, "")
+		remember(name, "")
 	}
 	remembered.RLock()
 	defer remembered.RUnlock()
@@ -538,6 +578,8 @@ func BenchmarkHazardTable(b *testing.B) {
 
 func BenchmarkReadDrug(b *testing.B) {
 	for b.Loop() {
-		findCandidates("examplicillin", "penicillin")
+		read, unread := readDrug("examplicillin", "penicillin")
+		findCandidates(read)
+		newReading(read, unread)
 	}
 }

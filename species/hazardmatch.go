@@ -19,9 +19,9 @@ type HazardMatch struct {
 	// known for another drug of the class,
 	// and nothing in the table about this one).
 	RelativeRank string
-	// Via is "drug name", "synonym X", "class X", "class X, by the ending -y",
-	// or "near spelling": then the name is not known and may be meant for
-	// Meant, and the match is a question.
+	// Via is "drug name", "synonym X", "class X", "class X, by the ending -y"
+	// (or "by the beginning y-"), or "near spelling": then the name is not
+	// known and may be meant for Meant, and the match is a question.
 	Via   string
 	Meant string
 }
@@ -34,19 +34,19 @@ type HazardMatch struct {
 // pharmacopoeias, without its salt, in each half of a combination; its class
 // by the class given and by the class that the drug is known to have,
 // whatever was given. An unknown name within two slips of one that the table
-// is about matches as "near spelling".
+// is about, or that sounds like it, matches as "near spelling".
 //
 // A row concerns the animal at its own rank (species, wild and domestic forms
 // being one, genus, family, order, class, or any). A row about a species,
-// genus or family concerns others of the family, and one about a genus or
-// family others of the order, as "relative"; so do rows about another drug of
-// the class in the animal itself. Rows of law on residues and rows about a
-// breed's gene concern nobody's relatives. Operator rows concern every
-// patient. A relative's condition is not asked of the patient. A route that is missing or not understood rules nothing out.
+// genus or family concerns others of the family and order as "relative"; so do
+// rows about another drug of the class in the animal itself. Rows of law on
+// residues and rows about a breed's gene concern nobody's relatives. Operator
+// rows concern every patient. A relative's condition is not asked of the
+// patient. A route that is missing or not understood rules nothing out.
 //
 // No match says nothing: see HazardCoverage.
 func MatchHazards(drug, class string, a *Animal, route string) []HazardMatch {
-	found := candidatesOf(drug, class)
+	found := remember(drug, class).rows
 	if len(found) == 0 {
 		return nil
 	}
@@ -54,7 +54,7 @@ func MatchHazards(drug, class string, a *Animal, route string) []HazardMatch {
 		a = &Animal{}
 	}
 	var out []HazardMatch
-	given := readRoute(route)
+	given := ReadRoute(route)
 	rows := hazards().rows
 	for _, c := range found {
 		h := &rows[c.row]
@@ -140,7 +140,7 @@ func relationOf(h *Hazard, a *Animal) (relation, rank string) {
 		return "", ""
 	case h.family != "" && a.Family == h.family:
 		return "relative", "family"
-	case h.Rank != "species" && h.order != "" && a.Order == h.order:
+	case h.order != "" && a.Order == h.order:
 		return "relative", "order"
 	}
 	return "", ""
@@ -157,11 +157,17 @@ type candidate struct {
 	sister bool // the row is about another drug of the class
 }
 
-// candidates of a drug and class are kept: a batch asks for the same few
-// drugs again and again.
+// What a drug and class lead to is kept: a batch asks for the same few drugs
+// again and again.
 var remembered struct {
 	sync.RWMutex
-	found map[[2]string][]candidate
+	found map[[2]string]*drugFound
+}
+
+// drugFound is what a drug and its class lead to.
+type drugFound struct {
+	rows    []candidate
+	reading *DrugReading
 }
 
 const (
@@ -169,7 +175,7 @@ const (
 	rememberLongest = 256 // bytes of a name and class
 )
 
-func candidatesOf(drug, class string) []candidate {
+func remember(drug, class string) *drugFound {
 	key := [2]string{drug, class}
 	remembered.RLock()
 	found, ok := remembered.found[key]
@@ -177,11 +183,12 @@ func candidatesOf(drug, class string) []candidate {
 	if ok {
 		return found
 	}
-	found = findCandidates(drug, class)
+	read, unread := readDrug(drug, class)
+	found = &drugFound{findCandidates(read), newReading(read, unread)}
 	if len(drug)+len(class) <= rememberLongest {
 		remembered.Lock()
 		if remembered.found == nil || len(remembered.found) >= rememberAtMost {
-			remembered.found = make(map[[2]string][]candidate)
+			remembered.found = make(map[[2]string]*drugFound)
 		}
 		remembered.found[[2]string{strings.Clone(drug), strings.Clone(class)}] = found
 		remembered.Unlock()
@@ -189,8 +196,7 @@ func candidatesOf(drug, class string) []candidate {
 	return found
 }
 
-func findCandidates(drug, class string) []candidate {
-	read := readDrug(drug, class)
+func findCandidates(read []reading) []candidate {
 	if len(read) == 0 {
 		return nil
 	}
@@ -213,7 +219,9 @@ func findCandidates(drug, class string) []candidate {
 		}
 	}
 	for _, r := range read {
-		if r.class != "" && r.how != bySpelling {
+		// What is known of other drugs of a class is told for a class that is
+		// misspelt, but not for that of a drug which may have been meant.
+		if r.class != "" && (r.how != bySpelling || r.misspelt) {
 			put(b.ofClass[r.class], r, true)
 		}
 	}

@@ -13,12 +13,13 @@ import (
 // A line of drugs.index is, tab-separated: key, name as written, kind
 // ("drug", "name", "combination", or "whole" for a name that counts only
 // where nothing else stands beside it), the drugs, their classes (both
-// joined by semicolons), and "hazard" if a row of the hazard table is about
-// one of these. A line of drug-classes.index is: key, name, classes,
-// "hazard" or nothing.
+// joined by semicolons), and why a near spelling of it is looked for: "hazard"
+// if a row of the hazard table is about one of these, "trait" if none is but a
+// class has a trait, or nothing. A line of drug-classes.index is: key, name,
+// classes, and the same.
 func Drugs(data fs.FS, out map[string][]byte) error {
 	tables := make(map[string]*table)
-	for _, name := range []string{"drug-classes.csv", "drug-synonyms.csv", "drug-class-names.csv", "hazards.csv"} {
+	for _, name := range []string{"drug-classes.csv", "drug-synonyms.csv", "drug-class-names.csv", "drug-class-traits.csv", "hazards.csv"} {
 		t, err := read(data, name)
 		if err != nil {
 			return err
@@ -90,24 +91,32 @@ func Drugs(data fs.FS, out map[string][]byte) error {
 		}
 	}
 
+	traits := make(map[string]bool)
+	for _, r := range tables["drug-class-traits.csv"].rows {
+		traits[r["class"]] = true
+	}
+	mark := func(drugs, classes []string) string {
+		is := func(marked map[string]bool) func(string) bool { return func(s string) bool { return marked[s] } }
+		switch {
+		case slices.ContainsFunc(drugs, is(hazardDrugs)) || slices.ContainsFunc(classes, is(hazardClasses)):
+			return "hazard"
+		case slices.ContainsFunc(classes, is(traits)):
+			return "trait"
+		}
+		return ""
+	}
+
 	var lines []string
 	for key, e := range entries {
 		var all []string
-		hazard := ""
 		for _, d := range e[2:] {
-			if hazardDrugs[d] {
-				hazard = "hazard"
-			}
 			for _, c := range classes[d] {
-				if hazardClasses[c] {
-					hazard = "hazard"
-				}
 				if !slices.Contains(all, c) {
 					all = append(all, c)
 				}
 			}
 		}
-		lines = append(lines, strings.Join([]string{key, e[0], e[1], strings.Join(e[2:], ";"), strings.Join(all, ";"), hazard}, "\t"))
+		lines = append(lines, strings.Join([]string{key, e[0], e[1], strings.Join(e[2:], ";"), strings.Join(all, ";"), mark(e[2:], all)}, "\t"))
 	}
 	out["drugs.index"] = sorted(lines)
 
@@ -123,18 +132,19 @@ func Drugs(data fs.FS, out map[string][]byte) error {
 			return fmt.Errorf("class name %q is there twice", r["name"])
 		}
 		seen[key] = r["classes"]
-		hazard := ""
 		for _, c := range list(r["classes"]) {
 			known[c] = true
-			if hazardClasses[c] {
-				hazard = "hazard"
-			}
 		}
-		lines = append(lines, strings.Join([]string{key, r["name"], strings.Join(list(r["classes"]), ";"), hazard}, "\t"))
+		lines = append(lines, strings.Join([]string{key, r["name"], strings.Join(list(r["classes"]), ";"), mark(nil, list(r["classes"]))}, "\t"))
 	}
 	for c := range hazardClasses {
 		if !known[c] {
 			return fmt.Errorf("hazard class %q is not in drug-class-names.csv", c)
+		}
+	}
+	for c := range traits {
+		if !known[c] {
+			return fmt.Errorf("class %q of drug-class-traits.csv is not in drug-class-names.csv", c)
 		}
 	}
 	for d, cs := range classes {

@@ -14,6 +14,7 @@
 package dose
 
 import (
+	"bytes"
 	"encoding/binary"
 	"slices"
 	"strings"
@@ -174,16 +175,24 @@ func (b *Batch) CaseInput(row *Row) *CaseInput {
 
 // enter puts a cell at its place in a case.
 func (row *Row) enter(c Column, in *CaseInput) {
-	text := string(row[c])
+	e := row.entry(c)
 	switch {
-	case strings.TrimSpace(text) == "":
+	case !e.Given():
 	case c == ColumnCondition:
-		for _, w := range strings.FieldsFunc(text, func(r rune) bool { return r == ' ' || r == ',' || r == ';' || r == '\u00a0' }) {
+		for _, w := range strings.FieldsFunc(e.Text, func(r rune) bool { return r == ' ' || r == ',' || r == ';' || r == '\u00a0' }) {
 			in.Patient.Condition = append(in.Patient.Condition, E(w))
 		}
 	default:
-		*columns[c].entry(in) = E(text)
+		*columns[c].entry(in) = e
 	}
+}
+
+// entry is a cell as the entry of a case; a blank one is none.
+func (row *Row) entry(c Column) Entry {
+	if len(bytes.TrimSpace(row[c])) == 0 {
+		return Entry{}
+	}
+	return E(string(row[c]))
 }
 
 // Worksheet drafts a row with its steps, texts and sources. The error is an
@@ -326,18 +335,18 @@ func (d *RowDrafter) read(row *Row) InputErrors {
 	c := &d.c
 	who := d.who(row)
 	animal := d.animals.get(row[ColumnSpecies], func() *part[*species.Animal] {
-		k, in := &checker{}, d.batch.partly(row, ColumnSpecies)
-		a := k.animal(in.Patient.Species, Entry{}, columns[ColumnSpecies].field)
+		k := &checker{}
+		a := k.animal(row.entry(ColumnSpecies), Entry{}, columns[ColumnSpecies].field)
 		return &part[*species.Animal]{a, a != nil, k.faults()}
 	})
 	mass := d.masses.get(row[ColumnMass], func() *part[metabolic.BodyMass] {
-		k, in := &checker{}, d.batch.partly(row, ColumnMass)
-		m, ok := need(k, in.Patient.Mass, Entry{}, columns[ColumnMass].field, massRemedy, metabolic.ParseBodyMass)
+		k := &checker{}
+		m, ok := need(k, row.entry(ColumnMass), Entry{}, columns[ColumnMass].field, massRemedy, metabolic.ParseBodyMass)
 		return &part[metabolic.BodyMass]{m, ok, k.faults()}
 	})
 	temperature := d.temperatures.get(row[ColumnTemperature], func() *part[metabolic.Celsius] {
-		k, in := &checker{}, d.batch.partly(row, ColumnTemperature)
-		t, ok := read(k, in.Patient.Temperature, columns[ColumnTemperature].field, metabolic.ParseTemperature)
+		k := &checker{}
+		t, ok := read(k, row.entry(ColumnTemperature), columns[ColumnTemperature].field, metabolic.ParseTemperature)
 		return &part[metabolic.Celsius]{t, ok, k.faults()}
 	})
 	set := d.settings.get(d.join(row, settingColumns), func() *part[setting] { return d.batch.readSetting(row) })
@@ -368,9 +377,9 @@ func (d *RowDrafter) who(row *Row) InputErrors {
 	if plain(row[ColumnCase]) && plain(row[ColumnAnimal]) {
 		return nil
 	}
-	k, in := &checker{}, d.batch.partly(row, ColumnCase, ColumnAnimal)
-	k.text(in.Case, columns[ColumnCase].field)
-	k.text(in.Patient.Name, columns[ColumnAnimal].field)
+	k := &checker{}
+	k.text(row.entry(ColumnCase), columns[ColumnCase].field)
+	k.text(row.entry(ColumnAnimal), columns[ColumnAnimal].field)
 	return k.faults()
 }
 

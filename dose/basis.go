@@ -82,7 +82,7 @@ func (e *beyondMeasured) Error() string {
 type kindsDiffer struct{ target, model *rateLine }
 
 func (e *kindsDiffer) Error() string {
-	return fmt.Sprintf("%s: the lines are of two kinds of rate (%s: %s, %s; %s: %s, %s), which are not compared", BasisEquation,
+	return fmt.Sprintf("the lines are of two kinds of rate (%s: %s, %s; %s: %s, %s), which are not compared",
 		animalWords(e.target.animal), e.target.equation.ID, e.target.kind, animalWords(e.model.animal), e.model.equation.ID, e.model.kind)
 }
 

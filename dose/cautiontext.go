@@ -78,6 +78,9 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 		if r.level == Stop {
 			*t = "Potent immobiliser: its dose is set by receptors, by the danger of recumbency and by the person who handles it, none of which follow metabolic rate. Use published doses for the species or its kin and those who have given them."
 		}
+		if meant := traitsOf(&c.Drug).meant; meant != "" {
+			*t = "Did you mean " + meant + "? " + *t
+		}
 		out.Source = "Sharma & McNeill 2009 Br J Pharmacol (read: abstract); classes from memory"
 	case BelowStep:
 		switch {
@@ -96,7 +99,7 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 		*t = fmt.Sprintf("The mass of the %s, %s, lies outside the measured masses behind the basis %s, %s to %s.", who, kg("mass", r.a), r.detail, kg("low", r.b), kg("high", r.c))
 	case BasisDisagrees:
 		s := n.models[r.model].s
-		*t = fmt.Sprintf("The bases disagree: by %s the mass-specific ratio S is %s, by the basis used (%s) it is %s, a factor of %s. Look at the doses under every basis before choosing.",
+		*t = fmt.Sprintf("The bases disagree: by the basis %s the ratio of rates per kg S is %s, by the basis used (%s) it is %s, a factor of %s. Look at the doses under every basis before choosing.",
 			r.detail, num("specific_other", r.b*s), c.Method.Basis, num("specific", s), num("ratio", r.a))
 	case LargeChange:
 		*t = fmt.Sprintf("Scaling changes the dose per kg at the same interval by a factor of %s.", num("factor", r.a))
@@ -134,8 +137,14 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 		}
 	case DrugNotNamed:
 		*t = "No drug is named: what is known of it in this animal could not be looked up. Nothing has been ruled out."
+	case DrugNotRecognised:
+		*t = drugNotRecognisedText(c, r.level)
 	case ControlledDrug:
 		*t = "A controlled drug: local law on keeping, recording and giving it applies."
+		if r.a == 0 {
+			*t = "The law of many countries controls such drugs. Is this one controlled where you work? Write controlled in the case. Local law on keeping, recording and giving it applies."
+			out.Source = "classes from memory"
+		}
 	case JuvenilePatient:
 		*t = "A juvenile: organs that clear drugs mature with age, which mass does not show."
 		out.Source = "Am J Vet Res 2000;61:706 (read)"
@@ -267,6 +276,24 @@ func taxonWords(taxon string) string {
 	return taxon
 }
 
+// drugNotRecognisedText says what could not be looked up. Parts of the name are
+// told in plain letters only.
+func drugNotRecognisedText(c *Case, l Level) string {
+	r := traitsOf(&c.Drug).reading
+	const remedy = " Write the international nonproprietary name, not a brand's, and the class."
+	near := ""
+	if len(r.Near) > 0 {
+		near = " Did you mean " + strings.Join(r.Near, ", ") + "?"
+	}
+	switch {
+	case l == Warn:
+		return "Neither the drug's name nor a class of it is in the lists of this program: hazards were not looked up, or by near spellings only. Nothing has been ruled out." + near + remedy
+	case r.Named():
+		return fmt.Sprintf("Part of the drug's name is not in the lists of this program (%s): hazards were looked up for the rest only.%s%s", strings.Join(r.Unread, "; "), near, remedy)
+	}
+	return "The drug's name is not in the lists of this program: hazards were looked up by its class only, and what is known of single drugs of the class is told as that of another drug." + near + " A brand's name is not known: write the international nonproprietary one."
+}
+
 func conditionText(word string) string {
 	switch word {
 	case "dehydrated":
@@ -291,6 +318,8 @@ func anatomyText(detail string) string {
 	switch detail {
 	case "renal portal":
 		return "Renal portal system: blood from the hind part of the body can pass the kidney first. Inject drugs that leave by the kidney, or harm it, in the front half."
+	case "fermenting gut, route not said":
+		return "An antibacterial by mouth in an animal that lives by fermentation can kill its gut flora, and then the animal. No route is given, or none that is understood: is it the mouth?"
 	case "fermenting gut":
 		return "An antibacterial by mouth in an animal that lives by fermentation can kill its gut flora, and then the animal."
 	}

@@ -262,7 +262,7 @@ func (n *numbers) planSteps(s *slate, c *Case, i int) {
 		s.add("Daily amount per kg", "d'·24 h / τ'", f6(p.dose[k])+" "+unit+" × 24 h / "+f6(p.interval)+" h", p.daily[k], amount+"/kg/day", "definition")
 		modelDaily := r.PerKg[k] * 24 / tau
 		s.add("Average concentration against the model's", "(d'·24 h/τ') / (S·d·24 h/τ)",
-			fmt.Sprintf("%s / (%s × %s)", f6(p.daily[k]), f6(mn.s), f6(modelDaily)), p.average, "times the model's", "average = F·D/(CL·τ), CL per kg ∝ S")
+			fmt.Sprintf("%s / (%s × %s)", f6(p.daily[k]), f6(mn.s), f6(modelDaily)), p.average, "", "average = F·D/(CL·τ), CL per kg ∝ S")
 	}
 }
 

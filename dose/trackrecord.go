@@ -23,10 +23,10 @@ func (r record) short() string {
 		"birds":       "68 pairs of birds",
 		"ratite":      "36 pairs of birds, one of them ostrich-like",
 		"mammal-bird": "30 published predictions from mammals to birds",
-		"ectotherms":  "no published record: assumed",
+		"ectotherms":  "an assumed spread, since no record is published",
 	}[r.name]
 	if s == "" {
-		s = "no published record: assumed"
+		s = "an assumed spread, since no record is published"
 	}
 	if r.kappa != 1 {
 		s += ", taken a fifth closer within one order"

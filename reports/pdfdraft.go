@@ -43,6 +43,9 @@ func (s *sheet) draftBox() {
 			f.para(append(runs, plain(")."))...)
 		}
 		s.rangeTable(f)
+		if d.Disagreement != "" {
+			f.paragraph(paraStyle{gap: 2}, bold(d.Disagreement))
+		}
 		f.para(plain(d.Meaning))
 		if s.from != nil {
 			from := "Drafted from the " + modelWords(s.from) + "."

@@ -571,7 +571,14 @@ func asGiven(typed string) string {
 		if strings.Contains(n, ".") {
 			n = strings.TrimRight(strings.TrimRight(n, "0"), ".")
 		}
-		return n
+		whole, fraction, dotted := strings.Cut(n, ".")
+		for i := len(whole) - 3; i > 0; i -= 3 {
+			whole = whole[:i] + "," + whole[i:]
+		}
+		if dotted {
+			return whole + "." + fraction
+		}
+		return whole
 	})
 	s = form.micro.ReplaceAllString(form.unspaced.ReplaceAllString(s, "$1 $2"), "mcg")
 	return form.iu.ReplaceAllString(s, "units")

@@ -93,8 +93,8 @@ func TestAsGiven(t *testing.T) {
 	for typed, want := range map[string]string{
 		"10 mg/kg":      "10 mg/kg",
 		" .5-1.0mg ":    "0.5 to 1 mg",
-		"22000 IU/kg":   "22000 units/kg",
-		"5000U":         "5000 units",
+		"22000 IU/kg":   "22,000 units/kg",
+		"5000U":         "5,000 units",
 		"85µg/kg":       "85 mcg/kg",
 		"85 ug/kg":      "85 mcg/kg",
 		"10 – 15 mg/kg": "10 to 15 mg/kg",

@@ -183,7 +183,7 @@ func (b *batchCall) fault(err error, table *batchTable, result *batchResult, cou
 	}
 	goOn := ""
 	if result.part != "" && counts.Rows > 0 && b.merge == "" {
-		goOn = fmt.Sprintf("%s of them are in %s, and the same command with --resume goes on", countWords(counts.Rows, "row"), result.part)
+		goOn = fmt.Sprintf("%s are in %s, and the same command with --resume goes on", countWords(counts.Rows, "row"), result.part)
 	}
 	switch {
 	case errors.Is(err, context.Canceled):

@@ -91,7 +91,7 @@ func TestBatchInterrupted(t *testing.T) {
 	}
 	for _, want := range []string{
 		fmt.Sprintf("tayra: so far, %s: %s drafted, 0 stopped, 0 failed\n", countWords(rows, "row"), withCommas(rows)),
-		fmt.Sprintf("tayra: out.csv: not finished: interrupted; %s of them are in out.csv.part, and the same command with --resume goes on\n", countWords(rows, "row")),
+		fmt.Sprintf("tayra: out.csv: not finished: interrupted; %s are in out.csv.part, and the same command with --resume goes on\n", countWords(rows, "row")),
 	} {
 		if !strings.Contains(said.String(), want) {
 			t.Errorf("said %q, want %q", said.String(), want)

@@ -14,9 +14,9 @@ import (
 	"tayra/reports"
 )
 
-// mostMerged is how many worksheets one file takes: it is made in memory, about
-// 100 kB a worksheet.
-const mostMerged = 2000
+// mostMerged is how many worksheets one file takes: six thousand pages, which
+// are made in memory.
+const mostMerged = 1000
 
 // batchSheets makes the worksheets of a batch.
 type batchSheets struct {
@@ -49,14 +49,14 @@ func (b *batchCall) worksheets(o *reports.BatchOptions) (*batchSheets, error) {
 	}
 	o.Worksheet = s.make
 	// Setting pages makes much rubbish, and the collector is what keeps a
-	// second processor from helping. It is asked to run less often.
-	if os.Getenv("GOGC") == "" {
-		debug.SetGCPercent(pdfGCPercent)
+	// second processor from helping: it is asked to run seldom, within bounds.
+	// The pages of a bundle are no rubbish.
+	if s.bundle == nil && os.Getenv("GOGC") == "" && os.Getenv("GOMEMLIMIT") == "" {
+		debug.SetGCPercent(800)
+		debug.SetMemoryLimit(192 << 20)
 	}
 	return s, nil
 }
-
-const pdfGCPercent = 800
 
 // prepareFolder makes the folder, or sees that it can take the files.
 func (s *batchSheets) prepareFolder() error {

@@ -192,11 +192,11 @@ func (s *rowScanner) fill() {
 // quoting follows a row from quote to quote until it ends. It can stop at the
 // end of what is read and go on when there is more.
 type quoting struct {
-	comma    byte
-	at       int // looked at up to here
-	cell     int // where the cell begins
-	state    quoteState
-	lines    int
+	comma byte
+	at    int // looked at up to here
+	cell  int // where the cell begins
+	state quoteState
+	lines int
 	// The first line end, if it stands within quotes, and where the cell
 	// around it begins; -1 if none was met.
 	firstEnd, firstCell int

@@ -3,6 +3,7 @@ package dose
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"tayra/metabolic"
@@ -240,18 +241,25 @@ func (n *numbers) hazardText(c *Case, r *raised, out *Caution) {
 	if drug == "" {
 		drug = h.DrugClass
 	}
+	named := drug
+	if also := append(append([]string{}, h.AlsoDrugs...), h.AlsoClasses...); len(also) > 0 && !slices.Contains(also, drug) {
+		named += " (also " + strings.Join(also, ", ") + ")"
+	}
 	var b strings.Builder
+	if h.Meant != "" {
+		fmt.Fprintf(&b, "Did you mean %s? ", h.Meant)
+	}
 	switch {
 	case h.Operator:
 		fmt.Fprintf(&b, "Danger to the person who handles it (%s): ", drug)
-	case h.Meant != "":
-		fmt.Fprintf(&b, "Did you mean %s? For %s on file: ", h.Meant, drug)
+	case h.RelativeRank == "food animal":
+		fmt.Fprintf(&b, "Law on food animals, on file for %s (%s): ", taxonWords(h.Taxon), drug)
 	case h.RelativeRank == "drug class":
 		fmt.Fprintf(&b, "Known in %s for a drug of the same class (%s): ", taxonWords(h.Taxon), drug)
 	case h.Relation == "relative":
-		fmt.Fprintf(&b, "Known in a relative (%s, of the same %s), %s: ", h.Taxon, h.RelativeRank, drug)
+		fmt.Fprintf(&b, "Known in a relative (%s, of the same %s), %s: ", h.Taxon, h.RelativeRank, named)
 	default:
-		fmt.Fprintf(&b, "%s, %s in %s: ", capital(drug), h.Severity, taxonWords(h.Taxon))
+		fmt.Fprintf(&b, "%s, %s in %s: ", capital(named), h.Severity, taxonWords(h.Taxon))
 	}
 	b.WriteString(strings.TrimSuffix(h.WhatHappens, "."))
 	b.WriteString(". Scaling cannot see it: ")

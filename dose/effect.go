@@ -1,36 +1,44 @@
 package dose
 
-import "strings"
+import (
+	"strings"
 
-// Drugs whose effect differs between species because receptors do, and not
-// because clearance does. Grouped by word of the class; from general
-// pharmacology, from memory, no source.
+	"tayra/species"
+)
+
+// Words of a class that mark a drug as one whose effect differs between
+// species because receptors do, and not because clearance does. The lists of
+// package species know the classes by name, and most drugs of them; these
+// words find a class that is described instead ("sedating agent"). From
+// general pharmacology, from memory, no source.
 var effectDrivenWords = []struct{ word, what string }{
 	{"sedat", "sedative"},
 	{"tranquil", "tranquillizer"},
 	{"anaesthe", "anaesthetic"},
 	{"anesthe", "anaesthetic"},
+	{"hypnotic", "hypnotic"},
 	{"dissociative", "dissociative anaesthetic"},
 	{"barbiturate", "barbiturate"},
 	{"benzodiazepine", "benzodiazepine"},
-	{"alpha-2", "alpha-2 agonist"},
 	{"alpha2", "alpha-2 agonist"},
 	{"α2", "alpha-2 agonist"},
 	{"opioid", "opioid"},
 	{"opiate", "opioid"},
+	{"narcotic", "opioid"},
 	{"phenothiazine", "phenothiazine"},
 	{"butyrophenone", "butyrophenone"},
 	{"neuromuscular", "neuromuscular blocker"},
 	{"relaxant", "muscle relaxant"},
 	{"anticholinergic", "anticholinergic"},
 	{"antimuscarinic", "anticholinergic"},
-	{"hormone", "hormone"},
+	{"hormon", "hormone"},
 	{"insulin", "hormone"},
 	{"corticosteroid", "hormone"},
 	{"glucocorticoid", "hormone"},
 	{"progest", "hormone"},
 	{"oestrogen", "hormone"},
 	{"estrogen", "hormone"},
+	{"androgen", "hormone"},
 	{"gonadotrop", "hormone"},
 	{"prostaglandin", "hormone"},
 }
@@ -38,55 +46,87 @@ var effectDrivenWords = []struct{ word, what string }{
 // Potent immobilisers: a stop, not a warning. A dose of these is set by the
 // receptor and by the danger of recumbency, and a scratch can kill the person
 // who handles them.
-var immobiliserWords = []string{
-	"immobili", "ultra-potent", "ultrapotent", "etorphine", "carfentanil", "carfentanyl", "thiafentanil", "sufentanil",
-	"lofentanil", "ohmefentanyl",
-}
+var immobiliserWords = []string{"immobili", "ultrapotent", "superpotent", "etorphin", "carfentan", "thiafentan"}
+
+// potentImmobiliser is what such a drug is called.
+const potentImmobiliser = "potent immobiliser"
 
 // drugTraits is what a drug's name and class say of it.
 type drugTraits struct {
-	effect     Level // of effect-driven; "" if it is not
-	what       string
+	reading    *species.DrugReading
+	effect     Level  // of effect-driven; "" if it is not
+	what       string // what it is
+	meant      string // the name that was meant, where only a near spelling says so
 	antibiotic bool
+	controlled bool // by the law of many countries
 }
 
 func traitsOf(d *Drug) *drugTraits {
-	t := &drugTraits{antibiotic: isAntibiotic(d.Class)}
-	t.effect, t.what = effectDriven(d.Name, d.Class)
+	t := &drugTraits{reading: species.ReadDrug(d.Name, d.Class)}
+	_, t.antibiotic = t.reading.Has(species.Antibacterial)
+	t.antibiotic = t.antibiotic || containsAny(joinedWords(d.Class), antibioticWords)
+	_, t.controlled = t.reading.Has(species.Controlled)
+	t.effectDriven(d)
 	return t
 }
 
-// effectDriven says whether the drug's name or class marks it as driven by
-// receptors, at which level, and what it is.
-func effectDriven(name, class string) (Level, string) {
-	text := strings.ToLower(name + " " + class)
-	for _, w := range immobiliserWords {
-		if strings.Contains(text, w) {
-			return Stop, "potent immobiliser"
+// effectDriven finds whether the drug's name or class marks it as driven by
+// receptors, at which level, and what it is: a potent immobiliser before all,
+// then what the name and class are read as, then a near spelling.
+func (t *drugTraits) effectDriven(d *Drug) {
+	text := joinedWords(d.Name + " " + d.Class)
+	immobiliser, found := t.reading.Has(species.Immobiliser)
+	if found || containsAny(text, immobiliserWords) {
+		t.effect, t.what, t.meant = Stop, potentImmobiliser, immobiliser.Meant
+		return
+	}
+	var what []string
+	for _, r := range t.reading.Traits {
+		if r.Trait != species.EffectDriven || r.Meant != "" && (r.Meant != t.meant && t.meant != "" || t.meant == "" && len(what) > 0) {
+			continue // a near spelling counts only where nothing surer was read
+		}
+		t.meant = r.Meant
+		what = append(what, r.Word)
+	}
+	if len(what) == 0 {
+		for _, w := range effectDrivenWords {
+			if containsAny(text, []string{w.word}) {
+				what = append(what, w.what)
+				break
+			}
 		}
 	}
-	for _, w := range effectDrivenWords {
-		if strings.Contains(text, w.word) {
-			return Warn, w.what
-		}
+	if len(what) > 0 {
+		t.effect, t.what = Warn, strings.Join(what, " and ")
 	}
-	return "", ""
 }
 
-// antibioticWords mark classes of antibacterial drugs: general pharmacology,
-// from memory, no source.
+// antibioticWords mark a class of antibacterial drugs that is described
+// instead of named: general pharmacology, from memory, no source.
 var antibioticWords = []string{
 	"penicillin", "cephalosporin", "cefalosporin", "macrolide", "lincosamide", "tetracycline", "quinolone", "aminoglycoside",
-	"sulfonamide", "sulphonamide", "antibiotic", "antibacterial", "beta-lactam", "carbapenem", "amphenicol", "pleuromutilin",
+	"sulfonamide", "sulphonamide", "antibiotic", "antibacterial", "antimicrobial", "betalactam", "carbapenem", "amphenicol", "pleuromutilin",
 	"nitroimidazole", "polymyxin", "glycopeptide",
 }
 
-// isAntibiotic says whether the class names an antibacterial.
-func isAntibiotic(class string) bool {
-	class = strings.ToLower(class)
-	for _, w := range antibioticWords {
-		if strings.Contains(class, w) {
-			return true
+// joinedWords is a text in small letters without hyphens and spaces.
+func joinedWords(text string) string {
+	return strings.NewReplacer("-", "", " ", "", "\u00a0", "", "\u2010", "", "\u2011", "").Replace(strings.ToLower(text))
+}
+
+// containsAny says whether the text holds one of the words, but for one that
+// it denies ("non-opioid").
+func containsAny(text string, words []string) bool {
+	for _, w := range words {
+		for rest := text; ; {
+			i := strings.Index(rest, w)
+			if i < 0 {
+				break
+			}
+			if !strings.HasSuffix(rest[:i], "non") {
+				return true
+			}
+			rest = rest[i+len(w):]
 		}
 	}
 	return false

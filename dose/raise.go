@@ -321,12 +321,22 @@ func raiseDrug(c *Case, n *numbers, add adder) {
 	if d.Depot {
 		add(DepotForm, Stop, -1)
 	}
-	if d.Controlled == Yes {
-		add(ControlledDrug, Warn, -1)
-	}
 	traits := n.recall.drug
 	if traits == nil {
 		traits = traitsOf(d)
+	}
+	switch {
+	case d.Name == UnnamedDrug:
+	case !traits.reading.Known():
+		add(DrugNotRecognised, Warn, -1)
+	case len(traits.reading.Unread) > 0:
+		add(DrugNotRecognised, Note, -1)
+	}
+	switch {
+	case d.Controlled == Yes:
+		add(ControlledDrug, Warn, -1, 1)
+	case d.Controlled == NotSaid && traits.controlled:
+		add(ControlledDrug, Warn, -1, 0)
 	}
 	if traits.effect != "" {
 		add(EffectDriven, traits.effect, -1).detail = traits.what
@@ -422,23 +432,10 @@ var conditionWords = []struct {
 	{Gravid, "gravid"},
 }
 
-// routeGroup reduces a route to what matters for scaling: how the drug gets in.
-func routeGroup(route string) string {
-	switch strings.ToLower(strings.TrimSpace(route)) {
-	case "":
-		return ""
-	case "iv", "i.v.", "intravenous", "intravenously", "io", "intraosseous":
-		return "intravenous"
-	case "sc", "sq", "s.c.", "subcutaneous", "subcut", "subq":
-		return "subcutaneous"
-	case "im", "i.m.", "intramuscular":
-		return "intramuscular"
-	case "po", "p.o.", "oral", "orally", "by mouth", "per os", "gavage", "in feed", "in food", "in water":
-		return "oral"
-	}
-	return strings.ToLower(strings.TrimSpace(route))
+// sameRoute says whether two routes are the same ways into the body; of routes
+// that are not understood, whether they are the same words.
+func sameRoute(a, b string) bool {
+	return strings.EqualFold(strings.TrimSpace(a), strings.TrimSpace(b)) || species.ReadRoute(a).Same(species.ReadRoute(b))
 }
 
-func sameRoute(a, b string) bool { return routeGroup(a) == routeGroup(b) }
-
-func oralRoute(r string) bool { return routeGroup(r) == "oral" }
+func oralRoute(r string) bool { return species.ReadRoute(r).Oral() }

@@ -160,6 +160,7 @@ func lookUp(index, key string) (string, bool) {
 type drugLine struct {
 	key, written string
 	whole        bool
+	yields       bool
 	drugs        []string
 	classes      []string
 	hazard       bool
@@ -167,13 +168,17 @@ type drugLine struct {
 
 func parseDrug(l string) drugLine {
 	c := strings.Split(l, "\t")
-	return drugLine{key: c[0], written: c[1], whole: c[2] == "whole", drugs: strings.Split(c[3], ";"), classes: strings.Split(c[4], ";"), hazard: c[5] != ""}
+	return drugLine{key: c[0], written: c[1], whole: c[2] == "whole", yields: c[2] == "yields", drugs: strings.Split(c[3], ";"), classes: strings.Split(c[4], ";"), hazard: c[5] != ""}
 }
 
 func (e drugLine) readings(out []reading, key string) []reading {
 	for _, d := range e.drugs {
 		r := reading{drug: d, how: byName, via: "drug name"}
-		if d != e.written && len(e.drugs) == 1 {
+		switch {
+		case d == e.written:
+		case e.yields:
+			r.how, r.via = bySynonym, e.written+", which yields "+d
+		case len(e.drugs) == 1:
 			r.how, r.via = bySynonym, "synonym "+e.written
 		}
 		out = append(out, r)

@@ -209,6 +209,12 @@ func TestMatchHazardsNames(t *testing.T) {
 		{"cefsampl", "", "golden hamster", "SC", "h079", "class cephalosporin, by the beginning cef-"},
 		{"ivermectin1%", "", "Greek tortoise", "SC", "h001", "drug name"},
 		{"co-codamol", "", "cat", "PO", "h033", "drug name"},
+		{"propacetamol", "", "cat", "IV", "h033", "propacetamol, which yields paracetamol"},
+		{"capecitabine", "", "cat", "PO", "h044", "capecitabine, which yields fluorouracil"},
+		{"febantel + praziquantel", "", "pigeon", "PO", "h019", "febantel, which yields fenbendazole"},
+		{"albendazole oxide", "", "pigeon", "PO", "h020", "albendazole oxide, which yields albendazole"},
+		{"aceclofenac", "", "cinereous vulture", "IM", "h011", "aceclofenac, which yields diclofenac"},
+		{"tetramisole", "", "goat", "SC", "h090", "tetramisole, which yields levamisole"},
 		{"samplazole", "NSAIDs", "chicken", "", "h018", "class NSAID"},
 		{"samplazole", "non-steroidal anti-inflammatory", "chicken", "", "h018", "class NSAID"},
 		{"samplazole", "Nonsteroidal anti-inflammatory drugs", "chicken", "", "h018", "class NSAID"},
@@ -309,12 +315,13 @@ func TestMatchHazardsRelation(t *testing.T) {
 		{"xylazine", "red deer", "h059", "relative", "order"},        //
 		{"metronidazole", "corn snake", "h004", "relative", "family"},
 		{"fenbendazole", "mourning dove", "h019", "direct", ""},
-		{"fenbendazole", "chicken", "h019", "", ""},           // an order row has no relatives
-		{"meloxicam", "chicken", "h018", "direct", ""},        //
-		{"meloxicam", "dog", "h018", "", ""},                  // nor has a class row
-		{"clenbuterol", "horse", "h087", "", ""},              // law
-		{"chloramphenicol", "cattle", "h084", "direct", ""},   //
-		{"etorphine", "giant anteater", "h082", "direct", ""}, // operator
+		{"fenbendazole", "chicken", "h019", "", ""},                       // an order row has no relatives
+		{"meloxicam", "chicken", "h018", "direct", ""},                    //
+		{"meloxicam", "dog", "h018", "", ""},                              // nor has a class row
+		{"clenbuterol", "horse", "h087", "relative", "food animal"},       // law
+		{"chloramphenicol", "cattle", "h084", "direct", ""},               //
+		{"chloramphenicol", "chicken", "h084", "relative", "food animal"}, //
+		{"etorphine", "giant anteater", "h082", "direct", ""},             // operator
 		{"etorphine", "black rhinoceros", "h081", "relative", "family"},
 		{"levamisole", "giant anteater", "h090", "direct", ""},
 		{"moxidectin", "Greek tortoise", "h001", "relative", "drug class"},

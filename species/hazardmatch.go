@@ -15,13 +15,14 @@ type HazardMatch struct {
 	// direct for every patient and carry Operator.
 	Relation string
 	// RelativeRank of a relative match: "family" or "order" (the row's drug,
-	// known in another animal of that), or "drug class" (the row's animals,
-	// known for another drug of the class,
-	// and nothing in the table about this one).
+	// known in another animal of that), "drug class" (the row's animals, known
+	// for another drug of the class, and nothing in the table about this one),
+	// or "food animal" (a law on residues: it concerns any animal that is eaten).
 	RelativeRank string
-	// Via is "drug name", "synonym X", "class X", "class X, by the ending -y"
-	// (or "by the beginning y-"), or "near spelling": then the name is not
-	// known and may be meant for Meant, and the match is a question.
+	// Via is "drug name", "synonym X", "X, which yields Y" (X is turned into Y,
+	// or is a form of it), "class X", "class X, by the ending -y" (or "by the
+	// beginning y-"), or "near spelling": then the name is not known and may be
+	// meant for Meant, and the match is a question.
 	Via   string
 	Meant string
 }
@@ -39,8 +40,9 @@ type HazardMatch struct {
 // A row concerns the animal at its own rank (species, wild and domestic forms
 // being one, genus, family, order, class, or any). A row about a species,
 // genus or family concerns others of the family and order as "relative"; so do
-// rows about another drug of the class in the animal itself. Rows of law on
-// residues and rows about a breed's gene concern nobody's relatives. Operator
+// rows about another drug of the class in the animal itself. Rows about a
+// breed's gene concern nobody's relatives; rows of law on residues concern every
+// animal, since any may be eaten: the caller knows whether this one is. Operator
 // rows concern every patient. A relative's condition is not asked of the
 // patient. A route that is missing or not understood rules nothing out.
 //
@@ -70,7 +72,7 @@ func MatchHazards(drug, class string, a *Animal, route string) []HazardMatch {
 			m.Relation, m.RelativeRank = "relative", "drug class"
 		case h.operatorToo && m.Relation != "direct":
 			m.Relation, m.RelativeRank, m.Operator = "direct", "", true
-		case m.Relation == "relative":
+		case m.Relation == "relative" && !h.Regulatory:
 			m.Condition, m.ConditionKind = "", "" // a relative is no adult turkey
 		}
 		if m.Relation != "" {
@@ -134,7 +136,9 @@ func relationOf(h *Hazard, a *Animal) (relation, rank string) {
 	switch {
 	case direct:
 		return "direct", ""
-	case h.Regulatory || h.ConditionKind == "breed":
+	case h.Regulatory:
+		return "relative", "food animal"
+	case h.ConditionKind == "breed":
 		return "", ""
 	case h.Rank != "species" && h.Rank != "genus" && h.Rank != "family":
 		return "", ""

@@ -123,6 +123,9 @@ func (r Route) Known() bool { return r.ways != 0 }
 // Oral reports whether the mouth or a tube into the gut is among the ways.
 func (r Route) Oral() bool { return r.ways&oral != 0 }
 
+// Injected reports whether an injection is among the ways.
+func (r Route) Injected() bool { return r.ways&parenteral != 0 }
+
 // Same reports whether two routes were read and name the same ways.
 func (r Route) Same(other Route) bool {
 	return r.all && other.all && r.ways != 0 && r.ways == other.ways

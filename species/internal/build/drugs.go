@@ -11,15 +11,16 @@ import (
 // reads the name and class of a drug.
 //
 // A line of drugs.index is, tab-separated: key, name as written, kind
-// ("drug", "name", "combination", or "whole" for a name that counts only
-// where nothing else stands beside it), the drugs, their classes (both
+// ("drug", "name", "combination", "yields" for a drug that the body turns into
+// the further ones, or "whole" for a name that counts only where nothing else
+// stands beside it), the drugs, their classes (both
 // joined by semicolons), and why a near spelling of it is looked for: "hazard"
 // if a row of the hazard table is about one of these, "trait" if none is but a
 // class has a trait, or nothing. A line of drug-classes.index is: key, name,
 // classes, and the same.
 func Drugs(data fs.FS, out map[string][]byte) error {
 	tables := make(map[string]*table)
-	for _, name := range []string{"drug-classes.csv", "drug-synonyms.csv", "drug-class-names.csv", "drug-class-traits.csv", "hazards.csv"} {
+	for _, name := range []string{"drug-classes.csv", "drug-synonyms.csv", "drug-class-names.csv", "drug-class-traits.csv", "drug-yields.csv", "hazards.csv"} {
 		t, err := read(data, name)
 		if err != nil {
 			return err
@@ -45,6 +46,16 @@ func Drugs(data fs.FS, out map[string][]byte) error {
 		}
 	}
 
+	yields := make(map[string][]string)
+	for _, r := range tables["drug-yields.csv"].rows {
+		for _, d := range []string{r["drug"], r["yields"]} {
+			if classes[d] == nil {
+				return fmt.Errorf("drug-yields.csv: no drug %q in drug-classes.csv", d)
+			}
+		}
+		yields[r["drug"]] = append(yields[r["drug"]], r["yields"])
+	}
+
 	hazardDrugs, hazardClasses := make(map[string]bool), make(map[string]bool)
 	entries := make(map[string][]string) // by key: written, kind, drugs
 	add := func(written, kind string, drugs ...string) error {
@@ -56,22 +67,29 @@ func Drugs(data fs.FS, out map[string][]byte) error {
 			return fmt.Errorf("drug name %q is there as %q too", written, other[0])
 		}
 		entries[key] = append([]string{written, kind}, drugs...)
-		if len(drugs) == 1 {
+		if kind != "combination" {
 			canonical[key] = drugs[0]
 		}
 		return nil
 	}
 	for d := range classes {
 		kind := "drug"
+		if yields[d] != nil {
+			kind = "yields"
+		}
 		if whole[d] {
 			kind = "whole"
 		}
-		if err := add(d, kind, d); err != nil {
+		if err := add(d, kind, append([]string{d}, yields[d]...)...); err != nil {
 			return err
 		}
 	}
 	for _, r := range synonyms {
-		if err := add(r["name"], r["kind"], list(r["drug"])...); err != nil {
+		kind, drugs := r["kind"], list(r["drug"])
+		if more := yields[drugs[0]]; kind == "name" && more != nil {
+			kind, drugs = "yields", append(drugs, more...)
+		}
+		if err := add(r["name"], kind, drugs...); err != nil {
 			return err
 		}
 	}

@@ -12,6 +12,7 @@ import (
 	"context"
 	"io"
 	"runtime"
+	"sync"
 
 	"tayra/dose"
 )
@@ -131,7 +132,8 @@ func Batch(ctx context.Context, r io.Reader, w io.Writer, shared *dose.CaseInput
 		o.Workers = runtime.GOMAXPROCS(0)
 	}
 	run := &batchRun{o: o, batch: batch, scanner: s, head: head, writer: w, counts: &counts}
-	return counts, run.all(ctx)
+	err = run.all(ctx)
+	return counts, err
 }
 
 type batchRun struct {
@@ -160,17 +162,33 @@ func (r *batchRun) all(ctx context.Context) error {
 	work, ordered := make(chan *block, blocks), make(chan *block, blocks)
 	stop := make(chan struct{})
 	go r.read(ctx, first, free, work, ordered, stop)
+	var workers sync.WaitGroup
 	for range r.o.Workers {
-		go func() {
-			worker := r.newWorker()
-			for b := range work {
-				worker.block(b)
-				b.done <- struct{}{}
-			}
-		}()
+		workers.Go(func() { r.work(work, stop) })
 	}
-	defer close(stop)
-	return r.write(ctx, free, ordered)
+	err = r.write(ctx, free, ordered)
+	// Nobody waits for a reader that waits for a slow pipe; but no worker is
+	// left in the middle of a file.
+	close(stop)
+	workers.Wait()
+	return err
+}
+
+// work drafts blocks until there are no more, or the batch has ended.
+func (r *batchRun) work(blocks <-chan *block, stop <-chan struct{}) {
+	worker := r.newWorker()
+	for {
+		select {
+		case b, open := <-blocks:
+			if !open {
+				return
+			}
+			worker.block(b)
+			b.done <- struct{}{}
+		case <-stop:
+			return
+		}
+	}
 }
 
 // start reads the first block, which shows the decimal mark of the table, and

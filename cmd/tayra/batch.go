@@ -128,6 +128,9 @@ func (b *batchCall) run(cmd *cobra.Command, animals string) error {
 	defer table.Close()
 	options := reports.BatchOptions{Notice: func(text string) { warn(stderr, table.name, text) }}
 	if b.columns != "" {
+		if b.columns == "-" && table.source == "" {
+			return &usageError{"--columns", "standard input is the table already", "name a file"}
+		}
 		if options.Columns, err = readColumns(b.columns, cmd.InOrStdin()); err != nil {
 			return err
 		}

@@ -65,7 +65,9 @@ func openResult(b *batchCall, table *batchTable, stdout io.Writer) (*batchResult
 	if b.resume {
 		return r, r.goOn()
 	}
-	switch _, err := os.Lstat(r.part); {
+	switch info, err := os.Lstat(r.part); {
+	case err == nil && sameAsAny(info, r.sources):
+		return nil, &usageError{"--output", r.part + ", where its rows would go, is the input itself", "name another file"}
 	case err == nil && !b.force:
 		return nil, &fileError{r.part, "exists already: an earlier run was interrupted", "add --resume to go on with it, or --force to start anew"}
 	case err == nil:

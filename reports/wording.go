@@ -1,0 +1,45 @@
+package reports
+
+import "tayra/dose"
+
+// Wording is how the values of a record are said, one function a name, for a
+// template that sets a worksheet where this package does not: text/template and
+// html/template take it by Funcs. So every place says a dose, an interval or a
+// caution in the same words.
+//
+// Functions of a value and its unit take the unit as the record spells it
+// (mg/kg, IU/kg/h). amount and perKg say one value; the names with Pair say both
+// ends of a [dose.Pair], or the one value where they are equal; those with Range
+// say a [dose.DoseRange].
+func Wording() map[string]any {
+	return map[string]any{
+		"perKg": perKgWords, "perKgPair": perKgPair, "perKgRange": perKgRange, "dailyPair": dailyPair, "daily": dailyWords,
+		"amount": amountWords, "amountPair": amountPair, "amountRange": amountRange,
+		"interval": intervalWords, "intervalBoth": intervalBothWords, "hours": hoursCell,
+		"asGiven": asGiven, "measured": measuredWords, "exact": exactWords, "count": countWord,
+
+		"order": orderWords, "give": giveWords, "massChoices": massChoices,
+		"strength": strengthWords, "perML": perMLWords, "dilution": dilutionWords, "roundingError": errorWords,
+
+		"animal": animalWords, "patientName": patientName, "mass": massWords, "drug": drugWords,
+		"draftedModel": draftedModel, "modelName": modelName, "model": modelWords, "typed": typedWords, "modelTyped": modelTyped,
+		"plan": planWords, "chosen": chosenWords, "average": averageWords,
+		"curveName": curveName, "relation": relationWords,
+
+		"level": levelWord, "stop": stopWords, "activeStops": activeStops, "overridden": overridden,
+		"countCautions": countWords, "worst": worstWords, "cautionModels": cautionModels, "numbers": numberWords,
+		"verified": verifiedWords, "groupSources": groupSources,
+
+		"paper": paperText, "formula": paperFormula,
+	}
+}
+
+// RecordDigest is the [Digest] of a worksheet's own record; "" for a worksheet
+// that has none.
+func RecordDigest(ws *dose.Worksheet) string {
+	record, err := JSON(ws)
+	if err != nil {
+		return ""
+	}
+	return Digest(record)
+}

@@ -194,13 +194,18 @@ type rate struct {
 }
 
 // at is the line's rate at a mass and, for ectotherms, a temperature.
-func (l *rateLine) at(m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate, error) {
-	r := rate{line: l, q10: 1}
+func (l *rateLine) at(m metabolic.Mass, t metabolic.Celsius, q10 float64) (r rate, err error) {
+	return r, l.into(&r, m, t, q10)
+}
+
+// into is at without the copying: rows of a table ask several million times.
+func (l *rateLine) into(r *rate, m metabolic.Mass, t metabolic.Celsius, q10 float64) error {
+	*r = rate{line: l, q10: 1}
 	switch {
 	case l.equation != nil:
 		w, err := l.equation.Rate(m, t, q10)
 		if err != nil {
-			return r, &noBasis{basis: l.basis, why: err.Error(), cause: err}
+			return &noBasis{basis: l.basis, why: err.Error(), cause: err}
 		}
 		r.watt, r.sd = float64(w), l.scatter.SDln
 		if !l.animal.Endotherm() && !l.equation.HasTemperatureTerm() && l.equation.HasT0 {
@@ -210,12 +215,12 @@ func (l *rateLine) at(m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate,
 	case l.measured != nil:
 		w0 := l.measured.Mass
 		if !l.reaches(m) {
-			return r, &beyondMeasured{w0, m}
+			return &beyondMeasured{w0, m}
 		}
 		r.watt = float64(l.measured.Rate) * math.Pow(float64(m/w0), measuredExponent)
 		if !l.animal.Endotherm() {
 			if !l.measured.HasTemperature {
-				return r, &noBasis{basis: BasisMeasured, why: "measured at a body temperature that the table does not give"}
+				return &noBasis{basis: BasisMeasured, why: "measured at a body temperature that the table does not give"}
 			}
 			r.t0, r.hasT0 = l.measured.Temperature, true
 			r.q10 = metabolic.Q10Factor(q10, t, l.measured.Temperature)
@@ -224,14 +229,14 @@ func (l *rateLine) at(m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate,
 	default:
 		w, sd, err := l.relatives.Rate(m, t)
 		if err != nil {
-			return r, &noBasis{basis: BasisRelatives, why: err.Error(), cause: err}
+			return &noBasis{basis: BasisRelatives, why: err.Error(), cause: err}
 		}
 		r.watt, r.sd, r.pred = float64(w), sd, l.relatives.Kin()
 	}
 	if !(r.watt > 0) || math.IsInf(r.watt, 0) {
-		return r, &noBasis{basis: l.basis, why: "gives no positive rate here"}
+		return &noBasis{basis: l.basis, why: "gives no positive rate here"}
 	}
-	return r, nil
+	return nil
 }
 
 // reaches says whether a measured rate is carried to a mass.
@@ -259,46 +264,48 @@ func (r *rate) massLimits() (low, high metabolic.Mass, ok bool) {
 // lowConfidence says that the row itself asks for caution.
 func (r *rate) lowConfidence() bool { return r.line.equation != nil && r.line.equation.LowConfidence }
 
-// on is the animal's rate on a basis. An animal without a group constant takes,
+// on puts the animal's rate on a basis into r. An animal without a group constant takes,
 // for the group basis, its measured rate, then the published line for its
 // class.
-func (l *animalLines) on(b Basis, eq *metabolic.Equation, m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate, error) {
+func (l *animalLines) on(r *rate, b Basis, eq *metabolic.Equation, m metabolic.Mass, t metabolic.Celsius, q10 float64) error {
 	a := l.animal
 	switch b {
 	case BasisGroup:
 		if l.group != nil {
-			return l.group.at(m, t, q10)
+			return l.group.into(r, m, t, q10)
 		}
 		if l.measured != nil {
-			if r, err := l.measured.at(m, t, q10); err == nil {
-				return r, nil
+			if err := l.measured.into(r, m, t, q10); err == nil {
+				return nil
 			}
 		}
 		if l.class != nil {
-			return l.class.at(m, t, q10)
+			return l.class.into(r, m, t, q10)
 		}
-		return rate{}, &noBasis{basis: b, why: fmt.Sprintf("no group constant for a %s, no rate measured near this mass and no published line", a.Group)}
+		return &noBasis{basis: b, why: fmt.Sprintf("no group constant for a %s, no rate measured near this mass and no published line", a.Group)}
 	case BasisEquation:
 		if eq != nil && eq.Applies(a.Group, a.Name) {
-			return equationLine(BasisEquation, eq, a).at(m, t, q10)
+			return equationLine(BasisEquation, eq, a).into(r, m, t, q10)
 		}
 		if l.class != nil {
-			return l.class.at(m, t, q10)
+			return l.class.into(r, m, t, q10)
 		}
-		return rate{}, &noBasis{basis: b, why: fmt.Sprintf("no published line for a %s", a.Group)}
+		return &noBasis{basis: b, why: fmt.Sprintf("no published line for a %s", a.Group)}
 	case BasisMeasured:
 		if l.measured == nil {
-			return rate{}, l.unmeasured
+			return l.unmeasured
 		}
-		return l.measured.at(m, t, q10)
+		return l.measured.into(r, m, t, q10)
 	default:
-		return l.relatives.at(m, t, q10)
+		return l.relatives.into(r, m, t, q10)
 	}
 }
 
 // basisRate is an animal's rate on a basis.
 func basisRate(b Basis, eq *metabolic.Equation, a *species.Animal, m metabolic.Mass, t metabolic.Celsius, q10 float64) (rate, error) {
-	return lines(a).on(b, eq, m, t, q10)
+	var r rate
+	err := lines(a).on(&r, b, eq, m, t, q10)
+	return r, err
 }
 
 // animalPair is the patient and a model animal, made ready to be asked for their
@@ -307,47 +314,55 @@ type animalPair struct {
 	c             *Case
 	m             *Model
 	target, model *animalLines
-	known         *modelRates // nil: nothing is remembered
+	known         *modelRates // of the model, as far as they were asked for
 }
 
+// pairOf makes a pair. known is what is remembered of the model; nil is nothing
+// yet.
 func pairOf(c *Case, m *Model, known *modelRates) animalPair {
+	if known == nil {
+		known = &modelRates{}
+	}
 	return animalPair{c, m, lines(c.Patient.Animal), lines(m.Animal), known}
 }
 
-// rates are the rates of both animals on one basis. They fail together: a
+// rates are the rates of both animals on one basis, the patient's in t; the
+// model's is the remembered one and not to be changed. They fail together: a
 // ratio of rates from two different bases is not one of the method's, except
 // where an animal has no group constant at all.
-func (p *animalPair) rates(b Basis, eq *metabolic.Equation) (t, mo rate, err error) {
+func (p *animalPair) rates(b Basis, eq *metabolic.Equation, t *rate) (mo *rate, err error) {
 	patient := &p.c.Patient
-	if t, err = p.target.on(b, eq, patient.Mass.Middle, patient.Temperature, p.c.Method.Q10); err != nil {
-		return t, mo, &ofAnimal{patient.Animal, err}
+	if err := p.target.on(t, b, eq, patient.Mass.Middle, patient.Temperature, p.c.Method.Q10); err != nil {
+		return nil, &ofAnimal{patient.Animal, err}
 	}
 	if mo, err = p.modelRate(b, eq); err != nil {
-		return t, mo, &ofAnimal{p.m.Animal, err}
+		return nil, &ofAnimal{p.m.Animal, err}
 	}
 	if b == BasisEquation && t.line.kind != mo.line.kind {
-		return t, mo, &kindsDiffer{t.line, mo.line}
+		return nil, &kindsDiffer{t.line, mo.line}
 	}
-	return t, mo, nil
+	return mo, nil
 }
 
-func (p *animalPair) modelRate(b Basis, eq *metabolic.Equation) (rate, error) {
+// modelRate is the model's rate, worked out when it is first asked for.
+func (p *animalPair) modelRate(b Basis, eq *metabolic.Equation) (*rate, error) {
 	m, q10 := p.m, p.c.Method.Q10
-	if p.known == nil {
-		return p.model.on(b, eq, m.Mass.Middle, m.Temperature, q10)
-	}
 	k := &p.known[b]
 	if of := (rateOf{m.Animal, m.Mass.Middle, m.Temperature, q10, eq}); k.of != of {
 		k.of = of
-		k.rate, k.err = p.model.on(b, eq, m.Mass.Middle, m.Temperature, q10)
+		k.err = p.model.on(&k.rate, b, eq, m.Mass.Middle, m.Temperature, q10)
 	}
-	return k.rate, k.err
+	return &k.rate, k.err
 }
 
 // pairRates are the rates of the patient and a model animal on one basis.
 func pairRates(b Basis, eq *metabolic.Equation, c *Case, m *Model) (t, mo rate, err error) {
 	p := pairOf(c, m, nil)
-	return p.rates(b, eq)
+	model, err := p.rates(b, eq, &t)
+	if err != nil {
+		return t, mo, err
+	}
+	return t, *model, nil
 }
 
 // modelRates remembers a model's rates by basis, since rows of a table that

@@ -87,13 +87,13 @@ func compute(c *Case, n *numbers) error {
 
 func computeModel(c *Case, i int, n *modelNumbers) error {
 	m := &c.Models[i]
-	t, mo, err := n.pair.rates(c.Method.Basis, c.Method.Equation)
+	mo, err := n.pair.rates(c.Method.Basis, c.Method.Equation, &n.target)
 	if err != nil {
 		return basisError(c, i, err)
 	}
-	n.target, n.model = t, mo
+	n.model = *mo
 	n.m = float64(c.Patient.Mass.Middle / m.Mass.Middle)
-	n.r = t.watt / mo.watt
+	n.r = n.target.watt / mo.watt
 	n.s = n.r / n.m
 	// The same basis, mass and temperature on both sides must leave S exactly
 	// 1, whatever the rounding of the powers: S = 1 changes nothing.

@@ -272,6 +272,7 @@ func raiseMassLimits(r *rate, m metabolic.Mass, whose int, add adder) {
 // have, and raises the widest disagreement.
 func raiseDisagreement(c *Case, mn *modelNumbers, i int, th *Thresholds, add adder) {
 	worst, worstBasis := 1.0, BasisGroup
+	var t rate
 	own := mn.pair.target.measured
 	for b := BasisGroup; b <= BasisRelatives; b++ {
 		if b == c.Method.Basis {
@@ -280,7 +281,7 @@ func raiseDisagreement(c *Case, mn *modelNumbers, i int, th *Thresholds, add add
 		if b == BasisMeasured && (own == nil || !own.reaches(c.Patient.Mass.Middle)) {
 			continue // as rates would say, but most animals have none: spare the words
 		}
-		t, mo, err := mn.pair.rates(b, nil)
+		mo, err := mn.pair.rates(b, nil, &t)
 		if err != nil {
 			continue
 		}

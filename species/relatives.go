@@ -105,6 +105,9 @@ func (r *RelativesLine) read() bool {
 	if own, ok := MeasuredRate(a); ok && own.Flag == "" {
 		p.Own = true
 	}
+	if n := len(fit.Nodes); n > 1 {
+		fit.Nodes = fit.Nodes[n-1:] // a prediction leans on the deepest alone, which holds those above it
+	}
 	r.fit, r.prediction = fit, p
 	return true
 }

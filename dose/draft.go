@@ -41,6 +41,7 @@ func Draft(c *Case) (*Worksheet, error) {
 	}
 	w.DraftedFrom = n.draftedFrom(c)
 	w.Cautions = n.cautions(c)
+	n.fitRecord(c, w)
 	for _, o := range c.Overrides {
 		w.Overrides[o.Slug] = o.Reason
 	}
@@ -55,7 +56,6 @@ func Draft(c *Case) (*Worksheet, error) {
 		w.Temperature = n.temperatureTable(c)
 	}
 	w.Several = n.severalRecord(c)
-	n.fitRecord(c, w)
 	n.productRecord(c, w)
 	n.concentrations(c, w)
 	w.Sources = n.sources(c, w)
@@ -413,7 +413,7 @@ func (n *numbers) disagreement(c *Case, bases []BasisLine) string {
 	raised := false
 	for i := range n.raised {
 		r := &n.raised[i]
-		raised = raised || r.slug == BasisDisagrees && r.level == Warn && r.model == n.from
+		raised = raised || n.fit == nil && r.slug == BasisDisagrees && r.level == Warn && r.model == n.from
 	}
 	if !raised {
 		return ""

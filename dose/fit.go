@@ -98,13 +98,13 @@ type FitRegimen struct {
 
 // Cautions of a fit.
 const (
-	FewSpecies      Slug = "few-species"
-	NarrowMasses    Slug = "narrow-masses"
-	OutsideMasses   Slug = "outside-masses"
-	ExponentBand    Slug = "exponent-outside-band"
-	WideInterval    Slug = "wide-interval"
-	HighLeverage    Slug = "high-leverage"
-	RepeatedSpecies Slug = "repeated-species"
+	FewSpecies    Slug = "few-species"
+	NarrowMasses  Slug = "narrow-masses"
+	OutsideMasses Slug = "outside-masses"
+	ExponentBand  Slug = "exponent-outside-band"
+	WideInterval  Slug = "wide-interval"
+	HighLeverage  Slug = "high-leverage"
+	LineAlone     Slug = "range-of-the-line-alone"
 )
 
 // FitTarget is the animal that a line is asked about.

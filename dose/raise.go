@@ -351,9 +351,10 @@ func raiseDrug(c *Case, n *numbers, add adder) {
 
 // raiseCase is what the case as a whole raises.
 func raiseCase(c *Case, n *numbers, add adder) {
-	if len(c.Models) == 1 {
+	switch {
+	case len(c.Models) == 1 && n.fit == nil:
 		add(OneModel, Note, -1)
-	} else {
+	case len(c.Models) > 1:
 		raiseSeveral(c, n, add)
 	}
 	for i := range c.Published {

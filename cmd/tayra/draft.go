@@ -190,8 +190,7 @@ func wholeText(ws *dose.Worksheet, o reports.TextOptions) []byte {
 
 // write renders everything in memory, puts the files in place, all or none, and
 // then prints the text.
-func (w *worksheetFlags) write(cmd *cobra.Command, ws *dose.Worksheet, c *readCaseFile, text func(*dose.Worksheet, reports.TextOptions) []byte) error {
-	var files []output
+func (w *worksheetFlags) write(cmd *cobra.Command, ws *dose.Worksheet, c *readCaseFile, text func(*dose.Worksheet, reports.TextOptions) []byte, files ...output) error {
 	var printed []byte
 	take := func(flag, path string, data []byte) {
 		switch path {

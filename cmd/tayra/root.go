@@ -52,6 +52,7 @@ tayra species anteater`,
 	root.AddCommand(
 		draftCommand(),
 		checkCommand(),
+		fitCommand(),
 		batchCommand(),
 		serveCommand(),
 		newCommand(),

@@ -31,7 +31,7 @@ Nothing is stored, and nothing leaves the computer: a case is kept by saving its
 file or its worksheet. It runs until it is stopped with Ctrl-C.`,
 		Example: `tayra serve
 tayra serve --port 8420 --open`,
-		Annotations: map[string]string{"usage": "tayra serve [flags]"},
+		Annotations: map[string]string{"usage": "tayra serve [flags]", runsOn: "yes"},
 		Args:        arguments(),
 		RunE: func(cmd *cobra.Command, _ []string) error {
 			if port < 0 || port > 65535 {

@@ -105,7 +105,17 @@ func readFile(name string, data []byte) (in *dose.CaseInput, say string, err err
 
 // readWorksheet takes the record out of a worksheet on paper.
 func readWorksheet(data []byte) (ws *dose.Worksheet, say string, err error) {
-	return nil, "", errors.New("a worksheet on paper cannot be read here yet; open its case file or its record")
+	a, err := reports.ReadWorksheetPDF(data)
+	if err != nil {
+		return nil, "", err
+	}
+	if ws, err = reports.ReadRecord(a.Record); err != nil {
+		return nil, "", err
+	}
+	if a.Digest != "" && a.Digest != reports.Digest(a.Record) {
+		say = " The record in the file is not the one that its pages were drawn from: hold the fields against the paper."
+	}
+	return ws, say, nil
 }
 
 // unplaceable lists what a case holds and the form has no field for: it would be

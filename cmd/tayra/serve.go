@@ -30,7 +30,7 @@ print its address. The page does what the commands draft, check and batch do.
 Nothing is stored, and nothing leaves the computer: a case is kept by saving its
 file or its worksheet. It runs until it is stopped with Ctrl-C.`,
 		Example: `tayra serve
-tayra serve --port 8420 --open`,
+tayra serve --open`,
 		Annotations: map[string]string{"usage": "tayra serve [flags]", runsOn: "yes"},
 		Args:        arguments(),
 		RunE: func(cmd *cobra.Command, _ []string) error {

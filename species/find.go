@@ -12,9 +12,9 @@ import (
 
 // Find returns the animal of a scientific or common name. Case, spaces,
 // hyphens, apostrophes and diacritics do not matter; "giant anteater
-// (Myrmecophaga tridactyla)" is read as well. A subspecies that has no row
-// is read as its species and a former scientific name as its present one:
-// the animal then says so in MatchedAs.
+// (Myrmecophaga tridactyla)" is read as well. A subspecies or breed that has
+// no row is read as its species and a former scientific name as its present
+// one: the animal then says so in MatchedAs.
 //
 // Nothing is guessed: a name that fits several animals is an
 // *AmbiguousError, one that fits none a *NotFoundError with the nearest
@@ -67,8 +67,11 @@ func named(words, folded string) (*Animal, error) {
 		return nil, &AmbiguousError{Words: words, Names: several}
 	}
 	a := scientific(n.scientific[0])
-	if n.former {
+	switch {
+	case n.former:
 		a.MatchedAs = fmt.Sprintf("%s stands in the table under %s", n.written, a.Name)
+	case n.form:
+		a.MatchedAs = fmt.Sprintf("%s has no row of its own and is read as %s", n.written, label(a))
 	}
 	return a, nil
 }
@@ -178,12 +181,13 @@ func scientific(name string) *Animal {
 type nameLine struct {
 	written    string
 	former     bool
+	form       bool // a subspecies or breed
 	scientific []string
 }
 
 func parseName(l string) nameLine {
 	c := strings.Split(l, "\t")
-	return nameLine{written: c[1], former: c[2] == "former", scientific: strings.Split(c[3], ";")}
+	return nameLine{written: c[1], former: c[2] == "former", form: c[2] == "form", scientific: strings.Split(c[3], ";")}
 }
 
 func parseAnimal(l string) *Animal {

@@ -74,6 +74,12 @@ func TestFind(t *testing.T) {
 		{"Abrothrix andina", "Abrothrix andina"}, // measured only
 		{"black vulture (Aegypius monachus)", "Aegypius monachus"},
 		{"rabbit", "Oryctolagus cuniculus"},
+		{"domestic chicken", "Gallus gallus domesticus"},
+		{"domestic dog", "Canis lupus familiaris"},
+		{"domestic turkey", "Meleagris gallopavo"},
+		{"African bush elephant", "Loxodonta africana"},
+		{"feral pigeon", "Columba livia"},
+		{"sulcata", "Centrochelys sulcata"},
 	}
 	for _, tt := range tests {
 		a, err := Find(tt.words)
@@ -114,6 +120,10 @@ func TestFindMatchedAs(t *testing.T) {
 		{"Mustela putorius furo", "Mustela furo", "stands in the table under Mustela furo"},
 		{"Sus scrofa domestica", "Sus scrofa domesticus", "stands in the table under"},
 		{"Geochelone sulcata", "Centrochelys sulcata", "stands in the table under"},
+		{"Bos indicus", "Bos taurus", "stands in the table under"},
+		{"greyhound", "Canis lupus familiaris", "greyhound has no row of its own and is read as dog (Canis lupus familiaris)"},
+		{"Amur tiger", "Panthera tigris", "read as tiger (Panthera tigris)"},
+		{"southern white rhinoceros", "Ceratotherium simum", "read as white rhinoceros"},
 	} {
 		a, err := Find(tt.words)
 		if err != nil || a.Name != tt.want || !strings.Contains(a.MatchedAs, tt.says) {
@@ -187,7 +197,16 @@ func TestFindMisspelt(t *testing.T) {
 		"Agapornis rosecollis":       "Agapornis roseicollis",
 		"southern tamanduas":         "southern tamandua",
 		"burmese pyton":              "Burmese python",
-		"Panthera tigriss altaicaaa": "", // too far from anything
+		"black baer":                 "American black bear",
+		"blak bear":                  "American black bear",
+		"elefant":                    "African elephant",
+		"african elefant":            "African elephant",
+		"whit rhinocerus":            "white rhinoceros",
+		"girafe":                     "giraffe",
+		"grayhound":                  "greyhound",
+		"polar baer":                 "polar bear",
+		"kitten":                     "cat", // the stage is another entry
+		"Panthera tigriss altaicaaa": "",    // too far from anything
 	} {
 		_, err := Find(words)
 		var missing *NotFoundError
@@ -234,6 +253,26 @@ func printable(t interface{ Errorf(string, ...any) }, s string) {
 	for _, r := range s {
 		if !unicode.IsPrint(r) || unicode.Is(unicode.Bidi_Control, r) {
 			t.Errorf("%+q holds %U", s, r)
+		}
+	}
+}
+
+// Whole words before beginnings of words: the elephants before what is only
+// called after them.
+func TestSearchOrder(t *testing.T) {
+	for words, order := range map[string][]string{
+		"elephant": {"Elephas maximus", "Loxodonta africana", "Macroscelides proboscideus"},
+		"zebra":    {"Equus grevyi", "Equus quagga", "Taeniopygia guttata", "Corucia zebrata"},
+		"bear":     {"Ursus maritimus", "Gypaetus barbatus", "Pogona vitticeps"},
+	} {
+		at := -1
+		found := Search(words)
+		for _, name := range order {
+			next := slices.IndexFunc(found, func(a *Animal) bool { return a.Name == name })
+			if next <= at {
+				t.Errorf("Search(%q): %s stands at %d, not after %d", words, name, next, at)
+			}
+			at = next
 		}
 	}
 }
@@ -360,6 +399,11 @@ func TestSearch(t *testing.T) {
 		{"Mammalia Pilosa", "Bradypus variegatus", 5, func(a *Animal) bool { return a.Order == "Pilosa" }},
 		{"Felis concolor", "Puma concolor", 1, nil},
 		{"anteat", "Myrmecophaga tridactyla", 1, nil},
+		{"elephant", "Elephas maximus", 2, nil},
+		{"elephants", "Elephas maximus", 2, nil},
+		{"zebra", "Equus grevyi", 4, nil},
+		{"bear", "Helarctos malayanus", 8, nil},
+		{"black bear", "Ursus americanus", 2, nil},
 		{"marsupial", "", 80, func(a *Animal) bool { return a.Group == "marsupial" || strings.Contains(a.Name, "marsupial") }},
 	} {
 		got := Search(tt.words)

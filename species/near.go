@@ -1,33 +1,43 @@
 package species
 
 import (
+	"math/bits"
 	"sort"
 	"strings"
 
 	"tayra/species/internal/fold"
 )
 
-// near returns up to five names near the folded words: first those that
-// contain them as whole words, then by edit distance to at most a third of
-// their letters. An animal is named once.
+// near returns up to five names near the folded words: by edit distance of the
+// whole to at most a third of its letters, and by words, each of which must be
+// near to one of the name, in their order. The nearest stand first; a word that
+// the name has more counts half a slip. An animal is named once.
 func near(folded string) []string {
+	if adult, ok := youngOf[folded]; ok {
+		return []string{adult}
+	}
 	key := fold.Key(folded)
+	words, mask := strings.Fields(folded), letters(key)
 	limit := max(1, len(key)/3)
 	type hit struct {
 		name, animal string
-		distance     int
+		distance     int // in half slips
 	}
 	var hits []hit
 	consider := func(nameKey, written, animal string) {
-		d := editDistance(key, nameKey, limit)
-		if d > limit {
-			w, err := fold.Words(written)
-			if err != nil || !hasWords(w, folded) {
-				return
+		d := 2 * editDistance(key, nameKey, limit)
+		within := d <= 2*limit
+		// Each word has two slips at most, of one letter each that the name
+		// may lack: spares the comparison with most names.
+		if bits.OnesCount32(mask&^letters(nameKey)) <= 2*len(words) {
+			w, _ := fold.Words(written)
+			if byWords, ok := wordDistance(words, strings.Fields(w)); ok && (byWords < d || !within) {
+				d, within = byWords, true
 			}
-			d = 1 // as good as one slip: the words are right, one is missing
 		}
-		hits = append(hits, hit{written, animal, d})
+		if within {
+			hits = append(hits, hit{written, animal, d})
+		}
 	}
 	for l := range lines(animalsIndex) {
 		k, rest, _ := strings.Cut(l, "\t")
@@ -60,9 +70,46 @@ func near(folded string) []string {
 	return out
 }
 
-// hasWords reports whether name contains words at word ends.
-func hasWords(name, words string) bool {
-	return strings.Contains(" "+name+" ", " "+words+" ")
+// youngOf are words for the young of animals. None is a name that is read, since
+// the case would then be that of an adult: the stage of life has its own entry.
+var youngOf = map[string]string{
+	"kitten": "cat", "kittens": "cat", "puppy": "dog", "puppies": "dog", "pup": "dog", "foal": "horse", "colt": "horse", "filly": "horse",
+	"calf": "cattle", "calves": "cattle", "heifer": "cattle", "lamb": "sheep", "lambs": "sheep", "kid": "goat", "goat kid": "goat",
+	"piglet": "pig", "piglets": "pig", "chick": "chicken", "chicks": "chicken", "poult": "turkey", "duckling": "domestic duck", "gosling": "domestic goose",
+	"fawn": "white-tailed deer", "cria": "llama", "joey": "red kangaroo", "tadpole": "common frog", "bear cub": "brown bear", "lion cub": "lion", "tiger cub": "tiger",
+}
+
+// wordDistance is how far words are from those of a name, in half slips: two a
+// slip within a word, and one for every word that only the name has. ok is
+// false unless each word is near to one of the name (equal under four letters,
+// within a slip under seven, else two) in the same order.
+func wordDistance(words, name []string) (d int, ok bool) {
+	if len(words) > len(name) {
+		return 0, false
+	}
+	at := 0
+	for i, w := range words {
+		limit := 2
+		switch {
+		case len(w) < 4:
+			limit = 0
+		case len(w) < 7:
+			limit = 1
+		}
+		best := limit + 1
+		// The nearest of the words that leave enough of them for the rest.
+		for j := at; j <= len(name)-(len(words)-i); j++ {
+			if e := editDistance(w, name[j], limit); e < best {
+				best, at = e, j
+			}
+		}
+		if best > limit {
+			return 0, false
+		}
+		d += 2 * best
+		at++
+	}
+	return d + len(name) - len(words), true
 }
 
 // editDistance counts the letters to insert, delete, change or swap with

@@ -2,6 +2,7 @@ package species
 
 import (
 	_ "embed"
+	"slices"
 	"sort"
 	"strings"
 	"sync"
@@ -28,9 +29,11 @@ func All() []*Animal { return append([]*Animal(nil), whole()...) }
 // Search returns the animals that have every one of the words, whole or as
 // the beginning of a word, in their names (scientific, common, former) or in
 // their class, group, order or family, English names of these included
-// ("bats"); a plural s does not matter. Those that have them in a name come
-// first, an exact name before all; then by scientific name. Words that no
-// name could have find nothing; no words find the whole table.
+// ("bats"); a plural s does not matter. An exact name comes first, then names
+// that end with the words ("Asian elephant"), that have them whole, that have
+// them as beginnings of words ("zebrata"), and last those that have them in a
+// taxon only; each by scientific name. Words that no name could have find
+// nothing; no words find the whole table.
 func Search(words string) []*Animal {
 	folded, err := fold.Words(words)
 	if err != nil {
@@ -44,6 +47,8 @@ func Search(words string) []*Animal {
 	others, taxa := otherNames(), taxonNames()
 	const (
 		exact = iota
+		atEnd
+		wholeInName
 		inName
 		inTaxon
 		no
@@ -59,10 +64,15 @@ func Search(words string) []*Animal {
 				continue
 			}
 			all = append(all, w)
-			if fold.Key(w) == key {
+			switch {
+			case fold.Key(w) == key:
 				rank = exact
-			} else if hasAll(w, parts) {
-				rank = min(rank, inName)
+			case rank > atEnd && (strings.HasSuffix(w, " "+folded) || strings.HasSuffix(w, " "+strings.TrimSuffix(folded, "s"))):
+				rank = atEnd
+			case rank > wholeInName && hasWhole(w, parts):
+				rank = wholeInName
+			case rank > inName && hasAll(w, parts):
+				rank = inName
 			}
 		}
 		if rank == no {
@@ -80,7 +90,19 @@ func Search(words string) []*Animal {
 			found[rank] = append(found[rank], a)
 		}
 	}
-	return append(append(found[exact], found[inName]...), found[inTaxon]...)
+	return slices.Concat(found[:]...)
+}
+
+// hasWhole reports whether every part is a word of the folded text, or the
+// plural of one.
+func hasWhole(text string, parts []string) bool {
+	text = " " + text + " "
+	for _, p := range parts {
+		if !strings.Contains(text, " "+p+" ") && !strings.Contains(text, " "+strings.TrimSuffix(p, "s")+" ") {
+			return false
+		}
+	}
+	return true
 }
 
 // hasAll reports whether every part begins a word of the folded text, or is

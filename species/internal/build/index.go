@@ -14,7 +14,8 @@ import (
 // A line of animals.index is, tab-separated: key, the twelve columns of
 // animals.csv, and the mass, rate, temperature, kind, grade, flag, source and
 // notes of measured-rates.csv. A line of names.index is: key, name as
-// written, kind ("common" or "former"), and the scientific names, joined by
+// written, kind ("common", "former", or "form" for a subspecies or breed that
+// has no row of its own), and the scientific names, joined by
 // semicolons. Lines are sorted by key and a key is one line; the key is the
 // folded name without spaces.
 func Index(data fs.FS, out map[string][]byte) error {
@@ -120,7 +121,7 @@ func Index(data fs.FS, out map[string][]byte) error {
 			byKey[key] = e
 		}
 		if e.kind != kind {
-			return fmt.Errorf("name %q is both common and former", written)
+			return fmt.Errorf("name %q is both %s and %s", written, e.kind, kind)
 		}
 		for _, s := range e.scientific {
 			if s == scientific {

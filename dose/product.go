@@ -403,6 +403,9 @@ type Pump struct {
 	// which the rate can be set; 0 unless BelowStep.
 	DiluteTo     float64 `json:"dilute_to_per_ml,omitempty"`
 	DilutePartIn float64 `json:"dilute_one_part_in,omitempty"`
+	// Dilution has its steps; its DrawML is the mL/h to set. Nil unless
+	// BelowStep.
+	Dilution *Dilution `json:"dilution,omitempty"`
 	TotalML      float64 `json:"total_ml,omitempty"` // of the product, for the course; 0 when its length is not said
 	Containers   int     `json:"containers,omitempty"`
 }
@@ -433,7 +436,7 @@ func PumpRate(amountPerHour float64, unit metabolic.AmountUnit, p ProductInput) 
 	} else {
 		out.BelowStep, out.ErrorPercent = true, -100
 		if d, draws := p.dilution(amountPerHour); d != nil {
-			out.DiluteTo, out.DilutePartIn = d.AmountPerML, d.Factor
+			out.DiluteTo, out.DilutePartIn, out.Dilution = d.AmountPerML, d.Factor, d
 			out.TotalML = withoutNoise(draws * step / d.Factor * 24 * p.Days)
 		}
 	}

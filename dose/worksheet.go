@@ -205,6 +205,7 @@ type Drafted struct {
 	Range50Amount     DoseRange `json:"range50_amount"`
 	Meaning           string    `json:"meaning"`                  // what the ranges say and do not say
 	Disagreement      string    `json:"bases_disagree,omitempty"` // the dose by the other bases, where they disagree 2-fold
+	Outranked         string    `json:"outranked,omitempty"`      // a published dose for this very species
 	WorstCaution      string    `json:"worst_caution"`
 }
 
@@ -214,8 +215,14 @@ type Loading struct {
 	DosePerKg         *Pair      `json:"dose_per_kg"` // null when it is not given
 	Unit              string     `json:"unit"`
 	PerAdministration *Pair      `json:"per_administration"`
+	AtLowMass         *Pair      `json:"per_administration_at_low_mass,omitempty"`
+	AtHighMass        *Pair      `json:"per_administration_at_high_mass,omitempty"`
 	Range90           *DoseRange `json:"range90"`
-	Text              string     `json:"text"`
+	Range90Amount     *DoseRange `json:"range90_amount,omitempty"`
+	// Measured is the loading dose in the syringe: one for a single dose, two
+	// for a dose range; nil without a product.
+	Measured []Administration `json:"measured,omitempty"`
+	Text     string           `json:"text"`
 }
 
 // ProductRecord is the draft in the syringe: method, section 8. VolumeML (or
@@ -237,8 +244,11 @@ type ProductRecord struct {
 	Ends             []Administration `json:"ends,omitempty"`
 	PumpMLPerH       *float64         `json:"pump_ml_per_h,omitempty"`
 	Pump             []Pump           `json:"pump,omitempty"`
-	Days             float64          `json:"days,omitempty"`
-	Text             []string         `json:"text,omitempty"`
+	// The drafted dose measured out at both ends of an estimated mass.
+	AtLowMass  []Administration `json:"at_low_mass,omitempty"`
+	AtHighMass []Administration `json:"at_high_mass,omitempty"`
+	Days       float64          `json:"days,omitempty"`
+	Text       []string         `json:"text,omitempty"`
 }
 
 // PublishedDose is a dose in print that the case cites; it outranks the draft.
@@ -265,8 +275,9 @@ type BasisLine struct {
 	PatientW  float64 `json:"patient_w"`
 	ModelW    float64 `json:"model_w"`
 	Specific  float64 `json:"specific"`
-	DosePerKg *Pair   `json:"dose_per_kg"` // null after a stop
-	Drafted   bool    `json:"drafted"`
+	DosePerKg *Pair   `json:"dose_per_kg"`        // at the drafted interval; null after a stop
+	Drafted   bool    `json:"drafted"`            // the basis that the draft uses
+	StandIn   string  `json:"stand_in,omitempty"` // which animal stands on another basis
 	Source    string  `json:"source"`
 }
 
@@ -290,7 +301,9 @@ type TemperatureLine struct {
 	TemperatureC float64 `json:"temperature_c"`
 	Specific     float64 `json:"specific"`
 	DosePerKg    Pair    `json:"dose_per_kg"`
-	IntervalH    float64 `json:"interval_h"`
+	IntervalH    float64 `json:"interval_h"` // 0 for a single dose and an infusion
+	DailyPerKg   *Pair   `json:"daily_per_kg,omitempty"`
+	Amount       Pair    `json:"per_administration"`
 }
 
 // TargetRecord is a concentration that the case asks to stay above.
@@ -312,18 +325,21 @@ type ProposedRatios struct {
 
 // Proposed is a regimen held against the drafted one.
 type Proposed struct {
-	DoseTyped     string         `json:"dose_typed"`
-	IntervalTyped string         `json:"interval_typed"`
-	DosePerKg     Pair           `json:"dose_per_kg"`
-	Unit          string         `json:"unit"`
-	IntervalH     *float64       `json:"interval_h"`
-	DailyPerKg    *Pair          `json:"daily_per_kg,omitempty"`
-	Ratios        ProposedRatios `json:"ratios"`
-	Differs       bool           `json:"differs"`
-	OutsideRange  bool           `json:"outside_range90"`
-	RaisesStop    bool           `json:"raises_stop"`
-	Cautions      []Caution      `json:"cautions,omitempty"`
-	Verdict       []string       `json:"verdict"`
+	DoseTyped     string   `json:"dose_typed"`
+	IntervalTyped string   `json:"interval_typed"`
+	DosePerKg     Pair     `json:"dose_per_kg"`
+	Unit          string   `json:"unit"`
+	IntervalH     *float64 `json:"interval_h"`
+	DailyPerKg    *Pair    `json:"daily_per_kg,omitempty"`
+	// PerAdministration is for the patient; per hour for an infusion.
+	PerAdministration Pair             `json:"per_administration"`
+	Measured          []Administration `json:"measured,omitempty"` // in the syringe, when a product is given
+	Ratios            ProposedRatios   `json:"ratios"`
+	Differs           bool             `json:"differs"`
+	OutsideRange      bool             `json:"outside_range90"`
+	RaisesStop        bool             `json:"raises_stop"`
+	Cautions          []Caution        `json:"cautions,omitempty"`
+	Verdict           []string         `json:"verdict"`
 }
 
 // Curve is the one-compartment course of one regimen at steady state.

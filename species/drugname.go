@@ -82,7 +82,7 @@ func readDrug(drug, class string) (out []reading, unread []string) {
 // a known name is taken first, so that "sodium phosphate" in "dexamethasone
 // sodium phosphate" is no drug and "benzyl alcohol" no alcohol.
 func readPart(out []reading, words []string, spellings *int) []reading {
-	var unknown []string
+	var unknown []int // places of words
 	for i := 0; i < len(words); {
 		n := min(5, len(words)-i)
 		for ; n > 0; n-- {
@@ -114,18 +114,30 @@ func readPart(out []reading, words []string, spellings *int) []reading {
 		}
 		if w := words[i]; otherDrug(w) {
 			out = stemReadings(out, w)
-			unknown = append(unknown, w)
+			unknown = append(unknown, i)
 		}
 		i++
 	}
-	if len(unknown) > 1 && len(unknown) <= 3 {
-		unknown = append(unknown, strings.Join(unknown, "")) // a name fallen apart
-	}
-	for _, w := range unknown {
+	near := func(from, to int) {
 		if *spellings > 0 {
 			*spellings--
-			out = nearReadings(out, w)
+			alone := !slices.ContainsFunc(words[:from], otherDrug) && !slices.ContainsFunc(words[to:], otherDrug)
+			out = nearReadings(out, strings.Join(words[from:to], ""), alone)
 		}
+	}
+	for _, i := range unknown {
+		near(i, i+1)
+	}
+	for _, i := range unknown { // a name of two words ("acetylsalicylic acid"), or fallen apart
+		if i > 0 {
+			near(i-1, i+1)
+		}
+		if i+1 < len(words) {
+			near(i, i+2)
+		}
+	}
+	if n := len(unknown); n == 3 && unknown[2]-unknown[0] == 2 {
+		near(unknown[0], unknown[2]+1)
 	}
 	return out
 }
@@ -247,8 +259,9 @@ var nearNames = sync.OnceValue(func() (out struct{ hazard, trait []nearName }) {
 })
 
 // nearReadings adds what a word is near to: within one slip (under eight
-// letters) or two, written by ear, or run together with another word.
-func nearReadings(out []reading, word string) []reading {
+// letters) or two, written by ear, or run together with another word. Names
+// that count only where they stand alone are left out where it does not.
+func nearReadings(out []reading, word string, alone bool) []reading {
 	if len(word) < 5 || len(word) > fold.MaxBytes {
 		return out
 	}
@@ -261,6 +274,9 @@ func nearReadings(out []reading, word string) []reading {
 				written = strings.Split(n.line, "\t")[1]
 			} else {
 				e := parseDrug(n.line)
+				if e.whole && !alone {
+					continue
+				}
 				read, written = e.readings(nil, n.key), e.written
 			}
 			for _, r := range read {

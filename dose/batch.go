@@ -336,7 +336,7 @@ func (d *RowDrafter) read(row *Row) InputErrors {
 	who := d.who(row)
 	animal := d.animals.get(row[ColumnSpecies], func() *part[*species.Animal] {
 		k := &checker{}
-		a := k.animal(row.entry(ColumnSpecies), Entry{}, columns[ColumnSpecies].field)
+		a := k.patientAnimal(row.entry(ColumnSpecies), Entry{}, columns[ColumnSpecies].field)
 		return &part[*species.Animal]{a, a != nil, k.faults()}
 	})
 	mass := d.masses.get(row[ColumnMass], func() *part[metabolic.BodyMass] {

@@ -184,7 +184,14 @@ type Method struct {
 	Intervals  []metabolic.Hours
 	Q10        float64
 	Thresholds Thresholds
-	Changed    []string // slugs of thresholds that the case changed
+	Changed    []ChangedThreshold
+}
+
+// ChangedThreshold is a threshold of cautions that the case set.
+type ChangedThreshold struct {
+	Name           string
+	Value, Default float64
+	Loosened       bool // the caution is raised later than by default
 }
 
 // Product is the product and the device.

@@ -46,6 +46,9 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 		*t = fmt.Sprintf("Patient (%s) and model (%s) are of different classes.", classWords(c.Patient.Animal), classWords(c.Models[r.model].Animal))
 		if c.Patient.Animal.Endotherm() && c.Models[r.model].Animal.Endotherm() {
 			*t += " Of 30 avian clearances predicted from mammals, 7 fell within 2-fold and 13 within 3-fold of the observed value."
+			if c.Patient.Animal.Mammal() {
+				*t += " Of the other direction no record is known to this program."
+			}
 			out.Source = "Hunter et al. 2008 J Zoo Wildl Med 39"
 		} else {
 			*t += " No published record of scaling between them is known to this program."
@@ -67,12 +70,15 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 	case AboveTolerated:
 		tol := c.Models[r.model].Tolerated
 		if n.stopped { // the number that a stop holds back is not told by the stop
-			*t = fmt.Sprintf("The dose per kg is above the highest that the case cites as tolerated by the model, %s (%s).", perKg("tolerated_per_kg", r.b), tol.Source)
+			*t = fmt.Sprintf("The dose per kg%s is above the highest that the case cites as tolerated by the model, %s (%s).", comma(r.detail), perKg("tolerated_per_kg", r.b), tol.Source)
 		} else {
-			*t = fmt.Sprintf("The drafted dose, %s, is above the highest that the case cites as tolerated by the model, %s (%s).", perKg("drafted_per_kg", r.a), perKg("tolerated_per_kg", r.b), tol.Source)
+			*t = fmt.Sprintf("The drafted dose%s, %s, is above the highest that the case cites as tolerated by the model, %s (%s).", comma(r.detail), perKg("drafted_per_kg", r.a), perKg("tolerated_per_kg", r.b), tol.Source)
 		}
 	case Peak:
 		*t = fmt.Sprintf("One administration is %s times the model's dose per kg: effects that follow the peak grow with it.", num("peak_ratio", r.a))
+		if c.Models[r.model].Regimen.Interval.Kind == metabolic.Infusion {
+			*t = fmt.Sprintf("The rate per kg is %s times the model's.", num("peak_ratio", r.a))
+		}
 		out.Numbers["threshold"] = r.b
 	case EffectDriven:
 		*t = fmt.Sprintf("%s: its effect differs between species because receptors do, not because clearance does. An equal blood level is not an equal effect.", capital(r.detail))
@@ -86,17 +92,23 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 	case BelowStep:
 		switch {
 		case c.Product.Input.Strength.Tablet():
-			*t = fmt.Sprintf("The dose is less than the smallest part of a tablet that can be given (%s). Take another form.", num("step_pieces", r.b))
+			part := map[float64]string{1: "a whole one", 0.5: "half a one", 0.25: "a quarter"}[r.b]
+			out.Numbers["step_pieces"] = r.b
+			*t = "The dose is less than the smallest part of a tablet that can be given, " + part + ". Take another form."
 		case c.Models[n.from].Regimen.Interval.Kind == metabolic.Infusion:
-			*t = fmt.Sprintf("The rate is under one step of the pump (%s mL/h): it cannot be set. Dilute as proposed below, or take a finer pump.", num("step_ml_per_h", r.b))
+			*t = fmt.Sprintf("The rate is under one step of the pump (%s mL/h): it cannot be set. Dilute the product, or take a finer pump.", num("step_ml_per_h", r.b))
 		default:
-			*t = fmt.Sprintf("The volume is under one step of the device (%s mL): it cannot be measured. Dilute as proposed below, or take a finer device.", num("step_ml", r.b))
+			*t = fmt.Sprintf("The volume is under one step of the device (%s mL): it cannot be measured. Dilute the product, or take a finer device.", num("step_ml", r.b))
 		}
 	case MassRatio:
-		*t = fmt.Sprintf("Patient and model differ in mass by a factor of %s: each percent of error in the exponent counts more.", num("mass_ratio", above1(r.a)))
+		*t = fmt.Sprintf("Patient and model differ in mass by a factor of %s: between the exponents 0.65 and 0.80 the dose moves by a factor of %s.", num("mass_ratio", above1(r.a)), num("exponents_factor", math.Pow(above1(r.a), 0.15)))
 	case MassRatioExtreme:
-		*t = fmt.Sprintf("Patient and model differ in mass by a factor of %s: at such a distance the choice of exponent alone moves the dose by tens of percent.", num("mass_ratio", above1(r.a)))
+		*t = fmt.Sprintf("Patient and model differ in mass by a factor of %s, beyond 100: between the exponents 0.65 and 0.80 the dose moves by a factor of %s.", num("mass_ratio", above1(r.a)), num("exponents_factor", math.Pow(above1(r.a), 0.15)))
 	case OutsideData:
+		if r.b == r.c {
+			*t = fmt.Sprintf("The mass of the %s, %s, is not the one mass behind the basis %s, %s.", who, kg("mass", r.a), r.detail, kg("low", r.b))
+			break
+		}
 		*t = fmt.Sprintf("The mass of the %s, %s, lies outside the measured masses behind the basis %s, %s to %s.", who, kg("mass", r.a), r.detail, kg("low", r.b), kg("high", r.c))
 	case BasisDisagrees:
 		s := n.models[r.model].s
@@ -107,9 +119,12 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 	case Compounded:
 		*t = fmt.Sprintf("Dose and interval are both adjusted, as in the energy-cost worksheets: the daily amount then departs by the factor %s from the one that keeps the model's average concentration.", num("average_ratio", r.a))
 	case Impractical:
-		h := r.a
-		*t = fmt.Sprintf("The interval that follows from half-lives, %s, is under %s h or over %s h: it says how far the two animals' clocks lie apart, not when to give the drug.",
-			hoursWords(h), metabolic.Significant(c.Method.Thresholds.IntervalShortH, 3), metabolic.Significant(c.Method.Thresholds.IntervalLongH, 3))
+		h, th := r.a, c.Method.Thresholds
+		limit := "over " + metabolic.Significant(th.IntervalLongH, 3) + " h"
+		if h < th.IntervalShortH {
+			limit = "under " + metabolic.Significant(th.IntervalShortH, 3) + " h"
+		}
+		*t = fmt.Sprintf("The interval that follows from half-lives, %s, is %s: it says how far the two animals' clocks lie apart, not when to give the drug.", hoursWords(h), limit)
 		out.Numbers["interval_h"] = h
 	case Suitability:
 		*t = fmt.Sprintf("Of the published criteria for scaling by size, %s speak against it for this drug: see the table of suitability.", num("criteria_against", r.a))
@@ -159,7 +174,10 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 		*t = fmt.Sprintf("Rounding to the device's step %s the dose by %s %%.", verb, metabolic.Significant(math.Abs(r.a), 3))
 		out.Numbers["error_percent"] = r.a
 	case EstimatedMass:
-		*t = fmt.Sprintf("The mass of the %s is estimated: %s to %s. Weigh the animal if it can be weighed.", who, kg("low", r.a), kg("high", r.b))
+		*t = fmt.Sprintf("The mass of the %s is estimated: %s to %s.", who, kg("low", r.a), kg("high", r.b))
+		if r.model < 0 {
+			*t += " Weigh the animal if it can be weighed."
+		}
 	case OneModel:
 		*t = "One model species only: the weakest evidence. Add others if their doses are published."
 	case GroupConstant:
@@ -167,7 +185,7 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 	case NoHalfLife:
 		*t = fmt.Sprintf("No half-life in the %s is given: nothing can be said of peaks, troughs or the time above a concentration.", who)
 	case MassNotBody:
-		*t = fmt.Sprintf("Part of this animal's mass is not metabolising body (%s): the rate by whole mass may be too high.", r.detail)
+		*t = fmt.Sprintf("Part of the mass of the %s is not metabolising body (%s): its rate by whole mass may be too high.", who, r.detail)
 		out.Source = "from memory"
 	case BodyTemperature:
 		*t = fmt.Sprintf("A body temperature of %s against the usual %s: ", metabolic.FormatCelsius(metabolic.Celsius(r.a)), metabolic.FormatCelsius(metabolic.Celsius(r.b)))
@@ -206,7 +224,14 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 	case OneOrder:
 		*t = fmt.Sprintf("All models are of one order (%s): their agreement says little about the patient.", r.detail)
 	case Thresh:
-		*t = "The case changes thresholds of cautions from their defaults: " + strings.Join(c.Method.Changed, ", ") + "."
+		var set []string
+		for _, ch := range c.Method.Changed {
+			set = append(set, fmt.Sprintf("%s %s (default %s)", ch.Name, metabolic.Significant(ch.Value, 4), metabolic.Significant(ch.Default, 4)))
+		}
+		*t = "The case sets thresholds of cautions: " + strings.Join(set, ", ") + "."
+		if r.level == Warn {
+			*t += " Some cautions are then raised later than by default, or not at all."
+		}
 		out.Numbers["changed"] = r.a
 	case Anatomy:
 		*t = anatomyText(r.detail)
@@ -307,9 +332,9 @@ func conditionText(word string) string {
 	case "dehydrated":
 		return "Dehydrated: volume of distribution and kidney perfusion are not those of the model. Correct fluids first."
 	case "renal":
-		return "Kidney disease: whether this drug leaves by the kidney is not said to decide it. Clearance may be below the one scaled."
+		return "Kidney disease: if the kidney clears any of this drug, its clearance is lower than the one scaled."
 	case "hepatic":
-		return "Liver disease: whether this drug leaves by the liver is not said to decide it. Clearance may be below the one scaled."
+		return "Liver disease: if the liver clears any of this drug, its clearance is lower than the one scaled."
 	case "pregnant":
 		return "Pregnant: volume and clearance differ, and the young are exposed."
 	case "lactating":
@@ -358,6 +383,14 @@ func commonName(scientific string) string {
 		return animalWords(a)
 	}
 	return scientific
+}
+
+// comma sets an aside off, where there is one.
+func comma(s string) string {
+	if s == "" {
+		return ""
+	}
+	return ", " + s
 }
 
 // roundedMass is a mass to 4 figures: the middle of an estimate carries no more.

@@ -204,10 +204,20 @@ func (k *checker) animal(e, where Entry, field string) *species.Animal {
 	return nil
 }
 
+// patientAnimal finds the animal to be treated: any but man.
+func (k *checker) patientAnimal(e, where Entry, field string) *species.Animal {
+	a := k.animal(e, where, field)
+	if a != nil && a.Human() {
+		k.fail(e, field, "man may be a model, never the patient", "write the animal that is to be treated")
+		return nil
+	}
+	return a
+}
+
 func (k *checker) patient(in *CaseInput, c *Case) {
 	p := &in.Patient
 	c.Patient.Name = k.text(p.Name, "patient.name")
-	c.Patient.Animal = k.animal(p.Species, p.Place, "patient.species")
+	c.Patient.Animal = k.patientAnimal(p.Species, p.Place, "patient.species")
 	c.Patient.Mass, _ = need(k, p.Mass, p.Place, "patient.mass", massRemedy, metabolic.ParseBodyMass)
 	c.Patient.Temperature, c.Patient.HasTemperature = read(k, p.Temperature, "patient.temperature", metabolic.ParseTemperature)
 	k.state(p, c)
@@ -338,7 +348,8 @@ func (k *checker) method(in *CaseInput, c *Case) {
 		}
 		*f.of(&c.Method.Thresholds) = v
 		if v != *f.of(&defaults) {
-			c.Method.Changed = append(c.Method.Changed, f.name)
+			d := *f.of(&defaults)
+			c.Method.Changed = append(c.Method.Changed, ChangedThreshold{Name: f.name, Value: v, Default: d, Loosened: (v > d) != f.below})
 		}
 	}
 }

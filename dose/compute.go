@@ -1,6 +1,7 @@
 package dose
 
 import (
+	"fmt"
 	"math"
 
 	"tayra/metabolic"
@@ -102,10 +103,16 @@ func computeModel(c *Case, i int, n *modelNumbers) error {
 	}
 	longest := longestInterval(&m.Regimen, c.Drug.Activity, c.Drug.Depot)
 	n.plans = plansFor(&m.Regimen, n.s, c.Method.Intervals, longest, n.planBuf[:0])
+	if c.Drug.Depot && m.Regimen.Interval.Kind == metabolic.Repeated {
+		n.plans = n.plans[:1] // same interval: no other is scaled
+	}
 	name := draftedPlan(&m.Regimen, n.s, c.Drug.Activity, c.Drug.Depot)
 	n.chosenByCase = false
 	if c.Method.Plan != PlanDefault && m.Regimen.Interval.Kind == metabolic.Repeated && !c.Drug.Depot {
 		name, n.chosenByCase = c.Method.Plan, true
+	}
+	if err := planRefused(c, n.plans); err != nil {
+		return err
 	}
 	for k := range n.plans {
 		if n.plans[k].name == name {
@@ -120,6 +127,34 @@ func computeModel(c *Case, i int, n *modelNumbers) error {
 	}
 	n.range90 = rangeAbout(about, n.spread.perKg, z90)
 	n.range50 = rangeAbout(about, n.spread.perKg, z50)
+	return nil
+}
+
+// planRefused says why the plan that a case names cannot be drafted: it would
+// give a time-dependent drug a longer interval than the model's, or scale the
+// interval of a depot form.
+func planRefused(c *Case, plans []planNumbers) error {
+	if c.Method.Plan == PlanDefault {
+		return nil
+	}
+	fail := func(problem, remedy string) error {
+		e := c.Input.Method.Plan
+		return InputErrors{{File: c.Input.File, Line: e.Line, Column: e.Column, Field: "method.plan", Problem: problem, Remedy: remedy}}
+	}
+	for k := range plans {
+		if plans[k].name != c.Method.Plan {
+			continue
+		}
+		own := plans[0].interval // same interval
+		if c.Drug.Activity == TimeDependent && plans[k].interval > own*(1+1e-12) {
+			return fail(fmt.Sprintf("%s stretches the interval from %s to %s, which a time-dependent drug does not allow", c.Method.Plan, hoursWords(own), hoursWords(plans[k].interval)),
+				"write clock or same-interval, or leave the plan out")
+		}
+		return nil
+	}
+	if c.Drug.Depot {
+		return fail("a depot form keeps the model's interval", "write same-interval, or leave the plan out")
+	}
 	return nil
 }
 

@@ -159,7 +159,11 @@ func (n *numbers) proposedRecord(c *Case, drafted, proposed *Curve) *Proposed {
 	}
 	mn := &n.models[n.from]
 	p := mn.plan()
-	out := &Proposed{DoseTyped: r.Typed, IntervalTyped: r.IntervalTyped, DosePerKg: r.PerKg, Unit: perKgUnit(r)}
+	out := &Proposed{DoseTyped: r.Typed, IntervalTyped: r.IntervalTyped, DosePerKg: r.PerKg, Unit: perKgUnit(r),
+		PerAdministration: scale(r.PerKg, float64(c.Patient.Mass.Middle))}
+	if c.Product != nil && r.Interval.Kind != metabolic.Infusion {
+		out.Measured = measuredOut(c, out.PerAdministration)
+	}
 	var daily, draftedDaily float64
 	dose, draftedDose := middle(r.PerKg), middle(p.dose)
 	switch {
@@ -204,7 +208,7 @@ func intervalWords(h float64) string {
 func raiseProposed(c *Case, n *numbers) {
 	n.proposedRaised = n.proposedRaised[:0]
 	r := c.Proposed
-	if r == nil || r.Interval.Kind == metabolic.Infusion {
+	if r == nil {
 		return
 	}
 	m, th := &c.Models[n.from], &c.Method.Thresholds
@@ -218,23 +222,26 @@ func raiseProposed(c *Case, n *numbers) {
 	case ratio > th.PeakWarn:
 		add(Peak, Warn, ratio, th.PeakWarn)
 	}
-	if t := m.Tolerated; t != nil && t.Unit == r.Unit && r.PerKg[1] > t.PerKg*(1+1e-12) {
+	if t := m.Tolerated; t != nil && t.Unit == r.Unit && r.Interval.Kind != metabolic.Infusion && r.PerKg[1] > t.PerKg*(1+1e-12) {
 		add(AboveTolerated, Stop, r.PerKg[1], t.PerKg)
 	}
 }
 
 // judge says in plain words what differs. It never says that a regimen is
-// right: only where it lies against the draft.
+// right: only where it lies against the draft. What the proposal raises of
+// itself comes first.
 func (n *numbers) judge(c *Case, out *Proposed, daily, draftedDaily float64) {
 	mn := &n.models[n.from]
 	p := mn.plan()
 	r := c.Proposed
 	f := func(x float64) string { return metabolic.Significant(x, 3) }
 	say := func(format string, args ...any) { out.Verdict = append(out.Verdict, fmt.Sprintf(format, args...)) }
-	compared := out.Ratios.Dose
-	what := "dose per kg"
-	if daily > 0 && draftedDaily > 0 {
-		compared, what = out.Ratios.Daily, "daily amount"
+	for i := range n.proposedRaised {
+		x := n.caution(c, &n.proposedRaised[i])
+		out.RaisesStop = out.RaisesStop || x.Level == Stop
+		x.Text = strings.Replace(x.Text, "The drafted dose", "The proposed dose", 1)
+		out.Cautions = append(out.Cautions, x)
+		say("%s, %s: %s", strings.ToUpper(string(x.Level)), x.Slug, x.Text)
 	}
 	switch {
 	case p.name == PlanOnce && r.Interval.Kind == metabolic.Once:
@@ -245,26 +252,27 @@ func (n *numbers) judge(c *Case, out *Proposed, daily, draftedDaily float64) {
 		} else {
 			say("The proposed single dose lies inside the drafted bracket.")
 		}
-	case compared < proposedLow || compared > proposedHigh:
-		out.Differs = true
-		say("The proposed %s is %s times the drafted one, outside 0.8 to 1.25.", what, f(compared))
-	default:
-		say("The proposed %s is %s times the drafted one, within 0.8 to 1.25.", what, f(compared))
+	case (p.name == PlanOnce) != (r.Interval.Kind == metabolic.Once):
+		// One is a single dose and the other is not: neither a daily amount
+		// nor the range can be compared.
+		out.Differs, out.OutsideRange = true, true
+		say("One regimen is a single dose and the other is repeated: amounts a day and the range are not comparable, and the dose per kg alone is %s times the drafted one.", f(out.Ratios.Dose))
+		return
+	case daily > 0 && draftedDaily > 0:
+		out.Differs = out.Ratios.Daily < proposedLow || out.Ratios.Daily > proposedHigh
+		where := "within"
+		if out.Differs {
+			where = "outside"
+		}
+		say("The proposed daily amount is %s times the drafted one, %s 0.8 to 1.25.", f(out.Ratios.Daily), where)
 	}
-	if p.interval > 0 {
-		switch {
-		case out.IntervalH == nil:
-			out.Differs = true
-			say("The proposed regimen is a single dose; the drafted one is repeated.")
-		case math.Abs(*out.IntervalH-p.interval) > 1e-9*p.interval:
+	if p.interval > 0 && out.IntervalH != nil {
+		if math.Abs(*out.IntervalH-p.interval) > 1e-9*p.interval {
 			out.Differs = true
 			say("Proposed is %s, drafted %s.", intervalWords(*out.IntervalH), intervalWords(p.interval))
-		default:
+		} else {
 			say("The interval is the drafted one.")
 		}
-	} else if p.name == PlanOnce && r.Interval.Kind == metabolic.Repeated {
-		out.Differs = true
-		say("The proposed regimen is repeated; the drafted one is a single dose, and nothing is drafted about repeating it.")
 	}
 	if x := out.Ratios.Peak; x != nil {
 		say("Its peak is %s times the drafted one's.", f(*x))
@@ -273,22 +281,16 @@ func (n *numbers) judge(c *Case, out *Proposed, daily, draftedDaily float64) {
 		say("Its trough is %s times the drafted one's.", f(*x))
 	}
 	// The range is about the drafted dose at the drafted interval; a regimen at
-	// another interval is held against it by its daily amount.
-	at := middle(r.PerKg)
+	// another interval is held against it by its daily amount, each end by
+	// itself.
+	at := r.PerKg
 	if p.interval > 0 && out.IntervalH != nil {
-		at *= p.interval / *out.IntervalH
+		at = scale(at, p.interval / *out.IntervalH)
 	}
-	out.OutsideRange = at < mn.range90.Low || at > mn.range90.High
+	out.OutsideRange = at[0] < mn.range90.Low || at[1] > mn.range90.High
 	if out.OutsideRange {
-		say("It lies outside the nine-in-ten range of the draft.")
+		say("It reaches outside the nine-in-ten range of the draft.")
 	} else {
 		say("It lies inside the nine-in-ten range of the draft, which says nothing of its effect or its danger.")
-	}
-	for i := range n.proposedRaised {
-		x := n.caution(c, &n.proposedRaised[i])
-		out.RaisesStop = out.RaisesStop || x.Level == Stop
-		x.Text = strings.Replace(x.Text, "The drafted dose", "The proposed dose", 1)
-		out.Cautions = append(out.Cautions, x)
-		say("It raises %s (%s): %s", x.Slug, x.Level, x.Text)
 	}
 }

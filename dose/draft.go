@@ -51,6 +51,7 @@ func Draft(c *Case) (*Worksheet, error) {
 	if !n.stopped {
 		w.Drafted = n.drafted(c, w.Cautions)
 		w.Drafted.Disagreement = n.disagreement(c, w.Bases)
+		w.Drafted.Outranked = outranked(w.Published)
 		w.Loading = n.loading(c)
 		w.Exponents = n.exponents(c)
 		w.Temperature = n.temperatureTable(c)
@@ -201,7 +202,7 @@ func (n *numbers) modelDraft(c *Case, i int) ModelDraft {
 		d.VolumeRange90 = pointer(rangeAbout(r.PerKg, n.volumeSpread(c, i), z90))
 	}
 	if n.fit != nil && i == n.from {
-		d.Parts = []RangePart{{Name: "prediction of the fitted line", SD: mn.spread.perKg, Text: "standard error of ln clearance of one new animal at this mass; the scatter of the table only"}}
+		d.Parts = []RangePart{{Name: "prediction of the fitted line", SD: mn.spread.perKg, Text: n.fit.rangeSource(n.fit.record)}}
 	} else {
 		d.Parts = n.rangeParts(c, i)
 	}
@@ -407,6 +408,20 @@ func (n *numbers) drafted(c *Case, cautions []Caution) *Drafted {
 	return d
 }
 
+// outranked names the published doses for this very species.
+func outranked(published []PublishedDose) string {
+	var doses []string
+	for _, p := range published {
+		if p.Relation == "species" {
+			doses = append(doses, fmt.Sprintf("%s, %s (%s)", p.DoseTyped, p.Interval, p.Source))
+		}
+	}
+	if len(doses) == 0 {
+		return ""
+	}
+	return "A dose is published for this species, and outranks this draft: " + strings.Join(doses, "; ") + "."
+}
+
 // disagreement names the doses by the other bases where they lie so far apart
 // that the first page must say it beside the number.
 func (n *numbers) disagreement(c *Case, bases []BasisLine) string {
@@ -433,7 +448,7 @@ func (n *numbers) disagreement(c *Case, bases []BasisLine) string {
 	}
 	at := ""
 	if u.Interval.Kind == metabolic.Repeated {
-		at = " at the model's interval"
+		at = " at the drafted interval"
 	}
 	return fmt.Sprintf("The bases disagree: the dose%s is %s, but %s.", at, used, strings.Join(others, ", "))
 }
@@ -472,6 +487,9 @@ func (n *numbers) meaning(c *Case, i int) string {
 	record := mn.spread.record.short()
 	if n.fit != nil && i == n.from {
 		record = fmt.Sprintf("the prediction interval of the line fitted to %d animals", n.fit.record.N)
+		if n.fit.byRecord {
+			record = "the published record of lines over several species, which is wider than this line's own interval"
+		}
 	}
 	level := "average blood level"
 	if p := mn.plan(); p.name == PlanBothAdjusted {
@@ -503,7 +521,17 @@ func (n *numbers) loading(c *Case) *Loading {
 	}
 	p := *m.LoadingPerKg
 	l.DosePerKg, l.PerAdministration = &p, pointer(scale(p, float64(c.Patient.Mass.Middle)))
-	l.Range90 = pointer(rangeAbout(p, volumeSD(c.Patient.Animal, m.Animal), z90))
+	sd := volumeSD(c.Patient.Animal, m.Animal)
+	l.Range90 = pointer(rangeAbout(p, sd, z90))
+	w := &c.Patient.Mass
+	// mg/kg stays, so the amount follows the mass itself.
+	l.Range90Amount = pointer(rangeAbout(*l.PerAdministration, math.Hypot(sd, w.HalfWidth()/z90), z90))
+	if w.Estimated() {
+		l.AtLowMass, l.AtHighMass = pointer(scale(p, float64(w.Low))), pointer(scale(p, float64(w.High)))
+	}
+	if c.Product != nil && m.Regimen.Interval.Kind != metabolic.Infusion {
+		l.Measured = measuredOut(c, *l.PerAdministration)
+	}
 	l.Text = "A loading dose follows the volume of distribution: mg/kg unchanged. Its range is of volume per kg (218 pairs of rat, dog and monkey; elsewhere assumed)."
 	return l
 }
@@ -538,13 +566,19 @@ func (n *numbers) publishedDoses(c *Case) []PublishedDose {
 		if species.SameSpecies(c.Patient.Animal, x.Animal) {
 			p.Relation = "species"
 		}
-		if x.HasPerKg {
-			p.DosePerKg = pointer(x.Regimen.PerKg)
+		perKg, known := x.Regimen.PerKg, x.HasPerKg
+		if !known && x.Regimen.Given.Per == metabolic.PerAnimal && p.Relation == "species" {
+			// A dose per animal of this very species is held against the draft
+			// at this animal's own mass.
+			perKg, known = scale(Pair{x.Regimen.Given.Low, x.Regimen.Given.High}, 1/float64(c.Patient.Mass.Middle)), true
+		}
+		if known {
+			p.DosePerKg = pointer(perKg)
 		}
 		if x.Regimen.Interval.Kind == metabolic.Repeated {
 			p.IntervalH = pointer(float64(x.Regimen.Interval.Hours))
-			if x.HasPerKg && daily > 0 {
-				p.DailyRatio = daily / (middle(x.Regimen.PerKg) * 24 / float64(x.Regimen.Interval.Hours))
+			if known && daily > 0 {
+				p.DailyRatio = daily / (middle(perKg) * 24 / float64(x.Regimen.Interval.Hours))
 			}
 		}
 		out = append(out, p)
@@ -574,12 +608,41 @@ func (n *numbers) bases(c *Case) (out []BasisLine, missing []UnavailableLine) {
 				l.ID += ", " + mo.line.equation.ID
 			}
 		}
+		l.StandIn = standIn(b, &t, &mo)
 		if !n.stopped {
-			l.DosePerKg = pointer(scale(m.Regimen.PerKg, s))
+			l.DosePerKg = pointer(scale(n.perSpecific(c), s))
 		}
 		out = append(out, l)
 	}
+	if lines(c.Patient.Animal).group == nil || lines(m.Animal).group == nil {
+		missing = append(missing, UnavailableLine{Basis: "exponents", Why: "they are those of group constants, and one of the animals has none"})
+	}
 	return out, missing
+}
+
+// standIn says which animal stands on another basis than the line's.
+func standIn(b Basis, t, m *rate) string {
+	var parts []string
+	if t.line.basis != b {
+		parts = append(parts, "patient: "+t.line.basis.String())
+	}
+	if m.line.basis != b {
+		parts = append(parts, "model: "+m.line.basis.String())
+	}
+	return strings.Join(parts, ", ")
+}
+
+// perSpecific is the dose per kg, at the drafted interval, for S = 1: the
+// drafted dose over S. Times another basis's S it is the dose that keeps what
+// the drafted one keeps. Beside a fitted line it is the model's own dose, at
+// the model's interval.
+func (n *numbers) perSpecific(c *Case) Pair {
+	mn, r := &n.models[n.from], &c.Models[n.from].Regimen
+	switch mn.plan().name {
+	case PlanOnce, PlanFitted:
+		return r.PerKg
+	}
+	return scale(mn.plan().dose, 1/mn.s)
 }
 
 // pairSource names what the two rates of a basis come from.
@@ -658,7 +721,7 @@ func (n *numbers) exponents(c *Case) []ExponentLine {
 	var out []ExponentLine
 	for _, e := range exponentChoices {
 		s := pivot * math.Pow(mn.m, e.b-1)
-		out = append(out, ExponentLine{Exponent: e.b, Specific: s, DosePerKg: scale(m.Regimen.PerKg, s), Remark: e.remark})
+		out = append(out, ExponentLine{Exponent: e.b, Specific: s, DosePerKg: scale(n.perSpecific(c), s), Remark: e.remark})
 	}
 	return out
 }
@@ -688,7 +751,12 @@ func (n *numbers) temperatureTable(c *Case) []TemperatureLine {
 		}
 		for k := range plans {
 			if plans[k].name == name {
-				out = append(out, TemperatureLine{TemperatureC: float64(t), Specific: s, DosePerKg: plans[k].dose, IntervalH: plans[k].interval})
+				l := TemperatureLine{TemperatureC: float64(t), Specific: s, DosePerKg: plans[k].dose, IntervalH: plans[k].interval,
+					Amount: scale(plans[k].dose, float64(p.Mass.Middle))}
+				if plans[k].daily[1] > 0 {
+					l.DailyPerKg = pointer(plans[k].daily)
+				}
+				out = append(out, l)
 			}
 		}
 	}

@@ -405,9 +405,9 @@ type Pump struct {
 	DilutePartIn float64 `json:"dilute_one_part_in,omitempty"`
 	// Dilution has its steps; its DrawML is the mL/h to set. Nil unless
 	// BelowStep.
-	Dilution *Dilution `json:"dilution,omitempty"`
-	TotalML      float64 `json:"total_ml,omitempty"` // of the product, for the course; 0 when its length is not said
-	Containers   int     `json:"containers,omitempty"`
+	Dilution   *Dilution `json:"dilution,omitempty"`
+	TotalML    float64   `json:"total_ml,omitempty"` // of the product, for the course; 0 when its length is not said
+	Containers int       `json:"containers,omitempty"`
 }
 
 // PumpRate gives the rate of an infusion: amountPerHour/strength mL/h, rounded

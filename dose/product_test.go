@@ -493,6 +493,15 @@ func TestPumpRate(t *testing.T) {
 		}
 		wantNear(t, tt.name+": error", got.ErrorPercent, tt.want.ErrorPercent, 1e-9)
 		tt.want.ErrorPercent = got.ErrorPercent
+		if d := got.Dilution; got.BelowStep != (d != nil) {
+			t.Errorf("%s: dilution %+v", tt.name, d)
+		} else if d != nil {
+			// 0.3 mg/h of 5 mg/mL diluted 1 in 10 is 0.6 mL/h of 0.5 mg/mL.
+			if d.DrawML != 0.6 || d.AmountPerML != 0.5 || len(d.Steps) != 1 || relative(d.Steps[0].TotalML, 10*d.Steps[0].TakeML) > 1e-12 {
+				t.Errorf("%s: dilution %+v", tt.name, d)
+			}
+		}
+		got.Dilution = nil
 		if got != tt.want {
 			t.Errorf("%s:\n got %+v\nwant %+v", tt.name, got, tt.want)
 		}

@@ -144,9 +144,13 @@ func (n *numbers) productRecord(c *Case, w *Worksheet) {
 		r.Rounding = "down"
 	}
 	if n.stopped {
-		if d := p.ends[0].Dilution; d != nil && n.onlyStop(c, BelowStep) {
-			r.Text = append(r.Text, fmt.Sprintf("The volume cannot be measured with a step of %s mL. Proposed: dilute 1 part of product in %s parts; override below-step with that as the reason, and the steps are printed.",
-				metabolic.Significant(p.step, 3), metabolic.Significant(d.Factor, 5)))
+		d, unit := p.ends[0].Dilution, "mL"
+		if n.models[n.from].plan().name == PlanInfusion {
+			d, unit = p.pump[0].Dilution, "mL/h"
+		}
+		if d != nil && n.onlyStop(c, BelowStep) {
+			r.Text = append(r.Text, fmt.Sprintf("The dose cannot be measured with a step of %s %s. Proposed: dilute 1 part of product in %s parts; override below-step with that as the reason, and the steps are printed.",
+				metabolic.Significant(p.step, 3), unit, metabolic.Significant(d.Factor, 5)))
 			w.Product = r
 		}
 		return
@@ -156,10 +160,18 @@ func (n *numbers) productRecord(c *Case, w *Worksheet) {
 		r.PumpMLPerH = pointer(p.pump[p.n-1].MLPerH)
 		r.Pump = append(r.Pump, p.pump[:p.n]...)
 		r.DoseGiven, r.ErrorPercent = p.pump[p.n-1].AmountPerHour, p.pump[p.n-1].ErrorPercent
+		if d := p.pump[p.n-1].Dilution; d != nil {
+			r.DoseGiven, r.ErrorPercent = d.AmountGiven, d.ErrorPercent
+		}
 		w.Product = r
 		return
 	}
 	r.Ends = append(r.Ends, p.ends[:p.n]...)
+	if mass := &c.Patient.Mass; mass.Estimated() {
+		k := n.models[n.from].drafted
+		r.AtLowMass = measuredOut(c, n.amountAt(c, n.from, k, mass.Low))
+		r.AtHighMass = measuredOut(c, n.amountAt(c, n.from, k, mass.High))
+	}
 	if !s.Tablet() {
 		r.VolumeML = a.Measured
 	} else {
@@ -170,6 +182,25 @@ func (n *numbers) productRecord(c *Case, w *Worksheet) {
 		r.DoseGiven, r.ErrorPercent = a.Dilution.AmountGiven, a.Dilution.ErrorPercent
 	}
 	w.Product = r
+}
+
+// measuredOut is an amount in the device of the case, each end by itself, once;
+// nil where it cannot be measured out at all.
+func measuredOut(c *Case, amount Pair) []Administration {
+	in := c.Product.Input
+	in.IntervalH, in.Days = 0, 0
+	var out []Administration
+	for i, x := range amount {
+		if i == 1 && amount[0] == amount[1] {
+			break
+		}
+		a, err := ForSyringe(x, c.Models[0].Regimen.Unit, in)
+		if err != nil {
+			return nil
+		}
+		out = append(out, a)
+	}
+	return out
 }
 
 // onlyStop says whether one stop alone keeps the dose back.

@@ -151,6 +151,9 @@ func raiseModel(c *Case, n *numbers, i int, add adder) {
 	if b.MatchedAs != "" {
 		add(NameTakenAs, Note, i)
 	}
+	if what := species.MassNotBody(b); what != "" {
+		add(MassNotBody, Note, i).detail = what
+	}
 	if m.Mass.Estimated() {
 		l := Note
 		if m.Mass.HalfWidth() > math.Log(1.2) {
@@ -191,13 +194,11 @@ func raiseModel(c *Case, n *numbers, i int, add adder) {
 	if outside(s, th.LargeChange) {
 		add(LargeChange, Warn, i, s)
 	}
-	if k := m.Regimen.Interval.Kind; k != metabolic.Infusion {
-		switch {
-		case plan.peakRatio > th.PeakStop*(1+1e-12) && c.Drug.Margin != Wide:
-			add(Peak, Stop, i, plan.peakRatio, th.PeakStop)
-		case plan.peakRatio > th.PeakWarn*(1+1e-12):
-			add(Peak, Warn, i, plan.peakRatio, th.PeakWarn)
-		}
+	switch {
+	case plan.peakRatio > th.PeakStop*(1+1e-12) && c.Drug.Margin != Wide:
+		add(Peak, Stop, i, plan.peakRatio, th.PeakStop)
+	case plan.peakRatio > th.PeakWarn*(1+1e-12):
+		add(Peak, Warn, i, plan.peakRatio, th.PeakWarn)
 	}
 	if m.Regimen.Interval.Kind == metabolic.Repeated {
 		want := float64(m.Regimen.Interval.Hours) / s
@@ -211,10 +212,7 @@ func raiseModel(c *Case, n *numbers, i int, add adder) {
 	if b.Human() || a.Human() {
 		add(HumanModel, Warn, i)
 	}
-	if t := m.Tolerated; t != nil && t.Unit == m.Regimen.Unit && m.Regimen.Interval.Kind != metabolic.Infusion &&
-		plan.dose[1] > t.PerKg*(1+1e-12) {
-		add(AboveTolerated, Stop, i, plan.dose[1], t.PerKg)
-	}
+	raiseTolerated(c, n, i, add)
 	if m.HalfLife == 0 {
 		add(NoHalfLife, Note, i)
 	} else if m.Regimen.Interval.Kind == metabolic.Repeated {
@@ -250,6 +248,47 @@ func raiseStandIn(c *Case, mn *modelNumbers, i int, add adder) {
 	}
 	if m != BasisGroup {
 		add(StandIn, l, i).detail = m.String()
+	}
+}
+
+// raiseTolerated holds everything that would go into the animal against the
+// tolerated maximum: the drafted dose, the dose as measured out, the loading
+// dose, and each of them in the lightest animal that an estimated mass allows.
+func raiseTolerated(c *Case, n *numbers, i int, add adder) {
+	m := &c.Models[i]
+	t := m.Tolerated
+	if t == nil || t.Unit != m.Regimen.Unit || m.Regimen.Interval.Kind == metabolic.Infusion {
+		return
+	}
+	w, lightest := float64(c.Patient.Mass.Middle), float64(c.Patient.Mass.Low)
+	worst, how := n.models[i].plan().dose[1], ""
+	take := func(perKg float64, what string) {
+		if perKg > worst*(1+1e-12) {
+			worst, how = perKg, what
+		}
+	}
+	measured := worst * w
+	if i == n.from && n.product.given {
+		measured = 0
+		for k := range n.product.ends[:n.product.n] {
+			e := &n.product.ends[k]
+			amount := e.AmountGiven
+			if e.BelowStep && e.Dilution != nil {
+				amount = e.Dilution.AmountGiven
+			}
+			measured = math.Max(measured, amount)
+		}
+		take(measured/w, "as measured out")
+	}
+	if m.LoadingPerKg != nil && m.Animal.Class == c.Patient.Animal.Class {
+		take(m.LoadingPerKg[1], "the loading dose")
+		measured = math.Max(measured, m.LoadingPerKg[1]*w)
+	}
+	if lightest < w {
+		take(measured/lightest, "in an animal of the lowest mass estimated")
+	}
+	if worst > t.PerKg*(1+1e-9) {
+		add(AboveTolerated, Stop, i, worst, t.PerKg).detail = how
 	}
 }
 
@@ -305,8 +344,9 @@ func raiseKinetics(m *Model, mn *modelNumbers, i int, th *Thresholds, add adder)
 	if acc := 1 / (1 - math.Exp(-math.Ln2*mn.plan().interval/half)); acc > th.Accumulation {
 		add(Accumulation, Warn, i, acc, half)
 	}
-	if m.AbsorptionHalf > m.HalfLife {
-		add(FlipFlop, Warn, i, float64(m.AbsorptionHalf), float64(m.HalfLife))
+	// In the patient the half-life is another, and absorption is taken as it is.
+	if slower := math.Min(half, float64(m.HalfLife)); float64(m.AbsorptionHalf) > slower {
+		add(FlipFlop, Warn, i, float64(m.AbsorptionHalf), slower)
 	}
 }
 
@@ -366,7 +406,13 @@ func raiseCase(c *Case, n *numbers, add adder) {
 		add(PublishedExists, l, -1, same).detail = p.Animal.Name
 	}
 	if len(c.Method.Changed) > 0 {
-		add(Thresh, Note, -1, float64(len(c.Method.Changed)))
+		l := Note
+		for _, ch := range c.Method.Changed {
+			if ch.Loosened {
+				l = Warn
+			}
+		}
+		add(Thresh, l, -1, float64(len(c.Method.Changed)))
 	}
 	p := &n.product
 	if p.given {

@@ -55,8 +55,8 @@ var drugCriteria = []criterion{
 			return unknown
 		},
 		text: [4]string{
-			unknown:       "Route of elimination not known to decide: the record of scaling is no better for renal drugs, but large departures gather among metabolised ones.",
-			speaksFor:     "Mostly renal: clearance by filtration follows kidney function, whose exponent (0.65 over 21 drugs) is near the one used.",
+			unknown:       "Not renal by filtration alone, or not said: whether such a drug scales depends on enzymes and transporters.",
+			speaksFor:     "Mostly renal: clearance by filtration follows kidney function, whose exponent (0.65 over 21 drugs) is near the one used. In the record of pairs, though, renal drugs were predicted no better.",
 			speaksAgainst: "Biliary: large, amphiphilic or conjugated drugs are named among those unlikely to scale.",
 		},
 		source:   "Hu & Hayton 2001 AAPS PharmSci; Sharma & McNeill 2009 Br J Pharmacol",

@@ -45,20 +45,21 @@ type thresholdField struct {
 	name     string
 	of       func(*Thresholds) *float64
 	min, max float64
+	below    bool // raised below the threshold, not above it
 }
 
 // thresholdFields says what a case may set, and within what limits.
 var thresholdFields = []thresholdField{
-	{"mass-ratio", func(t *Thresholds) *float64 { return &t.MassRatio }, 1, 1000},
-	{"mass-ratio-extreme", func(t *Thresholds) *float64 { return &t.MassRatioExtreme }, 1, 1e6},
-	{"basis-disagrees", func(t *Thresholds) *float64 { return &t.BasisWarn }, 1, 10},
-	{"basis-disagrees-note", func(t *Thresholds) *float64 { return &t.BasisNote }, 1, 10},
-	{"large-change", func(t *Thresholds) *float64 { return &t.LargeChange }, 1, 10},
-	{"peak", func(t *Thresholds) *float64 { return &t.PeakWarn }, 1, 3},
-	{"peak-stop", func(t *Thresholds) *float64 { return &t.PeakStop }, 1, 3},
-	{"interval-short", func(t *Thresholds) *float64 { return &t.IntervalShortH }, 0.5, 24},
-	{"interval-long", func(t *Thresholds) *float64 { return &t.IntervalLongH }, 24, 720},
-	{"rounding-error", func(t *Thresholds) *float64 { return &t.RoundingPercent }, 0.1, 20},
-	{"models-disagree", func(t *Thresholds) *float64 { return &t.ModelsFold }, 1, 10},
-	{"accumulation", func(t *Thresholds) *float64 { return &t.Accumulation }, 2, 100},
+	{"mass-ratio", func(t *Thresholds) *float64 { return &t.MassRatio }, 1, 1000, false},
+	{"mass-ratio-extreme", func(t *Thresholds) *float64 { return &t.MassRatioExtreme }, 1, 1e6, false},
+	{"basis-disagrees", func(t *Thresholds) *float64 { return &t.BasisWarn }, 1, 10, false},
+	{"basis-disagrees-note", func(t *Thresholds) *float64 { return &t.BasisNote }, 1, 10, false},
+	{"large-change", func(t *Thresholds) *float64 { return &t.LargeChange }, 1, 10, false},
+	{"peak", func(t *Thresholds) *float64 { return &t.PeakWarn }, 1, 3, false},
+	{"peak-stop", func(t *Thresholds) *float64 { return &t.PeakStop }, 1, 3, false},
+	{"interval-short", func(t *Thresholds) *float64 { return &t.IntervalShortH }, 0.5, 24, true},
+	{"interval-long", func(t *Thresholds) *float64 { return &t.IntervalLongH }, 24, 720, false},
+	{"rounding-error", func(t *Thresholds) *float64 { return &t.RoundingPercent }, 0.1, 20, false},
+	{"models-disagree", func(t *Thresholds) *float64 { return &t.ModelsFold }, 1, 10, false},
+	{"accumulation", func(t *Thresholds) *float64 { return &t.Accumulation }, 2, 100, false},
 }

@@ -3,6 +3,8 @@ package dose
 import (
 	"fmt"
 	"math"
+	"slices"
+	"strings"
 
 	"tayra/metabolic"
 )
@@ -75,39 +77,62 @@ func rateSteps(s *slate, who, sub string, w metabolic.Mass, t metabolic.Celsius,
 	b := "B" + sub
 	kcal := func(x float64) float64 { return metabolic.Power(x).KcalPerDay() }
 	rest := r.watt / r.q10 // before the factor of temperature
-	var title, formula, subst, source string
 	l := r.line
-	title = "Metabolic rate of the " + who
+	title := "Metabolic rate of the " + who + basisMark(r)
 	switch {
 	case l.equation != nil:
-		eq := l.equation
-		formula = eq.Formula()
-		source = eq.ID + ": " + eq.Citation + verifiedMark(eq.Verified)
-		subst = equationSubstitution(eq, w, t)
+		equationSteps(s, title, b, l.equation, w, t, rest)
 	case l.measured != nil:
 		x := l.measured
-		formula = b + " = B0·(W/W0)^0.75, measured at W0"
-		subst = fmt.Sprintf("%s kcal/day × (%s kg / %s kg)^0.75", f6(x.Rate.KcalPerDay()), f6(float64(w)), f6(float64(x.Mass)))
-		source = measuredSource(x.Source) + "; within a species the slope is nearer 0.67 (at most 12 % at the limits)"
+		source := measuredSource(x.Source) + "; within a species the slope is nearer 0.67 (at most 12 % at the limits)"
 		if x.Grade == "not basal" {
-			title = "Resting metabolic rate of the " + who
+			title = "Resting metabolic rate of the " + who + basisMark(r)
 			source += "; the row is graded not basal and is called resting"
 		}
+		s.add(title, b+" = B0·(W/W0)^0.75, measured at W0",
+			fmt.Sprintf("%s kcal/day × (%s kg / %s kg)^0.75", f6(x.Rate.KcalPerDay()), f6(float64(w)), f6(float64(x.Mass))), kcal(rest), "kcal/day", source)
 	default:
 		// The prediction is a straight line on logs at a fixed temperature:
 		// its slope is found from a second mass, so that the step can be followed.
 		slope, at1 := relativesLine(r, w, t)
-		formula = b + " = a·W^b, W in kg, by relatives"
-		subst = fmt.Sprintf("%s kcal/day × %s^%s", f6(kcal(at1)), f6(float64(w)), f6(slope))
-		source = relativesSource(r)
+		s.add(title, b+" = a·W^b, W in kg, by relatives", fmt.Sprintf("%s kcal/day × %s^%s", f6(kcal(at1)), f6(float64(w)), f6(slope)), kcal(rest), "kcal/day", relativesSource(r))
 	}
-	s.add(title+basisMark(r), formula, subst, kcal(rest), "kcal/day", source)
 	if r.hasT0 {
 		s.add("Factor of body temperature, "+who, "f = Q10^((T − T0)/10)",
 			fmt.Sprintf("%s^((%s °C − %s °C)/10)", f6(q10), f6(float64(t)), f6(float64(r.t0))), r.q10, "",
 			"Q10 2.5 by default; published 2.4 to 2.65 (Andrews & Pough 1985 Physiol Zool 58:214-231; Chappell & Ellis 1987 J Comp Physiol B 157:227-235)")
 		s.add("Metabolic rate of the "+who+" at its temperature", b+" = B·f", f6(kcal(rest))+" kcal/day × "+f6(r.q10), kcal(r.watt), "kcal/day", "definition")
 	}
+}
+
+// equationSteps puts the numbers into a published line, in its own units, and
+// then shows the way to kcal/day where they are others.
+func equationSteps(s *slate, title, b string, eq *metabolic.Equation, w metabolic.Mass, t metabolic.Celsius, watt float64) {
+	source := eq.ID + ": " + eq.Citation + verifiedMark(eq.Verified)
+	day := metabolic.Power(watt).KcalPerDay()
+	perUnit := kcalPerDayOf(eq.RateUnit)
+	if eq.RateUnit == "kcal/day" {
+		s.add(title, eq.Formula(), equationSubstitution(eq, w, t)+" kcal/day", day, "kcal/day", source)
+		return
+	}
+	own := day / perUnit
+	s.add(title+", as published", eq.Formula(), equationSubstitution(eq, w, t)+" "+eq.RateUnit, own, eq.RateUnit, source)
+	s.add(title, b+" in kcal/day = "+b+" in "+eq.RateUnit+" × "+f6(perUnit), f6(own)+" "+eq.RateUnit+" × "+f6(perUnit), day, "kcal/day", "1 cal = 4.184 J; 20.1 J per mL O2")
+}
+
+// kcalPerDayOf is one unit of metabolic rate in kcal/day.
+func kcalPerDayOf(unit string) float64 {
+	switch unit {
+	case "W":
+		return metabolic.Power(1).KcalPerDay()
+	case "kJ/day":
+		return 1 / metabolic.JoulePerCalorie
+	case "J/h":
+		return 24 / (1000 * metabolic.JoulePerCalorie)
+	case "mL O2/h":
+		return 24 * metabolic.JoulePerMLO2 / (1000 * metabolic.JoulePerCalorie)
+	}
+	return 1
 }
 
 func basisMark(r *rate) string { return ", basis " + r.line.basis.String() }
@@ -119,24 +144,27 @@ func verifiedMark(v string) string {
 	return " (" + v + ")"
 }
 
-// equationSubstitution puts the numbers into a published line, in its own
-// units, and shows the way to kcal/day where they are others.
+// equationSubstitution puts the numbers into a published line in its own units.
 func equationSubstitution(eq *metabolic.Equation, w metabolic.Mass, t metabolic.Celsius) string {
 	mass, unit := float64(w), "kg"
 	if eq.MassUnit == "g" {
 		mass, unit = w.Grams(), "g"
 	}
-	text := fmt.Sprintf("%s × (%s %s)^%s", f6(eq.A), f6(mass), unit, f6(eq.B))
-	switch eq.Form {
-	case metabolic.FormQuadratic:
-		text = fmt.Sprintf("with W = %s %s", f6(mass), unit)
-	case metabolic.FormPower:
-	default:
-		text += fmt.Sprintf(" with the temperature term at %s °C", f6(float64(t)))
+	m := "(" + f6(mass) + " " + unit + ")"
+	if eq.Form == metabolic.FormQuadratic {
+		return fmt.Sprintf("%s × %s^(%s + %s × log10 %s)", f6(eq.A), m, f6(eq.B), f6(eq.C), f6(mass))
 	}
-	text += " " + eq.RateUnit
-	if eq.RateUnit != "kcal/day" {
-		text += ", as kcal/day"
+	text := fmt.Sprintf("%s × %s^%s", f6(eq.A), m, f6(eq.B))
+	if !eq.Ectotherm() && eq.HasTemperatureTerm() {
+		t = eq.T0 // an endotherm's temperature never scales its rate
+	}
+	switch eq.Form {
+	case metabolic.FormLogLinear:
+		text += fmt.Sprintf(" × 10^(%s × %s)", f6(eq.C), f6(float64(t)))
+	case metabolic.FormBoltzmann:
+		text += fmt.Sprintf(" × exp(−%s / (%s + 273.15))", f6(eq.C), f6(float64(t)))
+	case metabolic.FormLinear:
+		text += fmt.Sprintf(" × (%s − %s)", f6(float64(t)), f6(eq.C))
 	}
 	return text
 }
@@ -223,7 +251,7 @@ func (n *numbers) planSteps(s *slate, c *Case, i int) {
 		s.add("Interval that half-lives would have", "τ / S", f6(tau)+" h / "+f6(mn.s), tau/mn.s, "h", "half-life follows V/CL, so M/R = 1/S")
 		switch p.name {
 		case PlanClock:
-			s.add("Practical interval", "τ' = the practical interval nearest to τ / S on a log scale", "nearest to "+f6(tau/mn.s)+" h", p.interval, "h", "practical intervals and the model's own")
+			s.add("Practical interval", "τ' = the practical interval nearest to τ / S on a log scale", "nearest to "+f6(tau/mn.s)+" h among "+n.intervalWords(c, i), p.interval, "h", "practical intervals and the model's own; a tie takes the shorter")
 			for _, k := range ks {
 				s.add(end("Dose per kg", k), "d' = d·S·τ'/τ", fmt.Sprintf("%s %s × %s × %s h / %s h", f6(r.PerKg[k]), unit, f6(mn.s), f6(p.interval), f6(tau)), p.dose[k], unit, scaling)
 			}
@@ -279,12 +307,54 @@ func (n *numbers) rangeSteps(s *slate, c *Case, i int) {
 	s.add("Exponent and scatter of species", "√((0.16·ln M)² + σm² + σt²)",
 		fmt.Sprintf("√((0.16 × ln %s)² + %s² + %s²)", f6(mn.m), f6(sp.model), f6(sp.target)), sp.composed, "",
 		"Hu & Hayton 2001 (91 substances); scatter of measured species about the basis")
-	extra := ""
-	if sp.temperature > 0 || sp.massPerKg > 0 {
-		extra = fmt.Sprintf(", then in quadrature %s (temperature, assumed) and %s (estimated masses)", f6(sp.temperature), f6(sp.massPerKg))
+	m := &c.Models[i]
+	if sp.temperature > 0 {
+		t0 := func(r *rate) string {
+			if r.hasT0 {
+				return f6(float64(r.t0))
+			}
+			return "T"
+		}
+		diff := func(t metabolic.Celsius, r *rate) string {
+			if !r.hasT0 {
+				return "0"
+			}
+			return "(0.15 × |" + f6(float64(t)) + " − " + t0(r) + "| / 10)^2"
+		}
+		s.add("Body temperatures", "√((0.15·|T − T0|/10)^2 for the patient and for the model)",
+			"√("+diff(c.Patient.Temperature, &mn.target)+" + "+diff(m.Temperature, &mn.model)+")", sp.temperature, "", "assumed")
 	}
-	s.add("Standard deviation of ln dose", "sd = the larger of the two"+map[bool]string{true: ", with temperature and mass", false: ""}[extra != ""],
-		"max("+f6(sp.floor)+", "+f6(sp.composed)+")"+extra, sp.perKg, "", "the record already holds the scatter of species, so the two are not added")
+	if sp.massAmount > 0 {
+		power := "0.25"
+		if m.Regimen.PerAnimal {
+			power = "0.75"
+		}
+		h := func(b metabolic.BodyMass) string {
+			if !b.Estimated() {
+				return "0"
+			}
+			return "½·ln(" + f6(float64(b.High)) + " / " + f6(float64(b.Low)) + ")"
+		}
+		s.add("Estimated masses, for the dose per kg", "√((0.25·ht/1.645)^2 + ("+power+"·hm/1.645)^2), h = ½·ln(high/low)",
+			fmt.Sprintf("√((0.25 × %s / 1.645)^2 + (%s × %s / 1.645)^2)", h(c.Patient.Mass), power, h(m.Mass)), sp.massPerKg, "", "dose per kg goes with mass^-0.25")
+		s.add("Estimated masses, for the amount", "√((0.75·ht/1.645)^2 + ("+power+"·hm/1.645)^2)",
+			fmt.Sprintf("√((0.75 × %s / 1.645)^2 + (%s × %s / 1.645)^2)", h(c.Patient.Mass), power, h(m.Mass)), sp.massAmount, "", "the amount goes with the patient's mass^0.75")
+	}
+	core := "max(" + f6(sp.floor) + ", " + f6(sp.composed) + ")"
+	quadrature := func(mass float64) (formula, numbers string) {
+		formula, numbers = "sd = the larger of the two", core
+		if sp.temperature > 0 || mass > 0 {
+			formula = "sd = √(the larger of the two^2 + temperature^2 + mass^2)"
+			numbers = "√(" + core + "^2 + " + f6(sp.temperature) + "^2 + " + f6(mass) + "^2)"
+		}
+		return formula, numbers
+	}
+	formula, numbers := quadrature(sp.massPerKg)
+	s.add("Standard deviation of ln dose per kg", formula, numbers, sp.perKg, "", "the record already holds the scatter of species, so the two are not added")
+	if sp.massAmount > 0 {
+		formula, numbers = quadrature(sp.massAmount)
+		s.add("Standard deviation of ln amount", formula, numbers, sp.amount, "", "as above, with the masses' part of the amount")
+	}
 	p := mn.plan()
 	about := p.dose
 	if p.name == PlanOnce {
@@ -295,4 +365,46 @@ func (n *numbers) rangeSteps(s *slate, c *Case, i int) {
 	s.add("Nine in ten, high end", "d'·exp(1.645·sd)", f6(about[1])+" "+unit+" × exp(1.645 × "+f6(sp.perKg)+")", mn.range90.High, unit, "normal quantile 0.95")
 	s.add("Even odds, low end", "d'·exp(−0.674·sd)", f6(about[0])+" "+unit+" × exp(−0.674 × "+f6(sp.perKg)+")", mn.range50.Low, unit, "normal quantile 0.75")
 	s.add("Even odds, high end", "d'·exp(0.674·sd)", f6(about[1])+" "+unit+" × exp(0.674 × "+f6(sp.perKg)+")", mn.range50.High, unit, "normal quantile 0.75")
+	if sp.massAmount > 0 && i == n.from {
+		w, amount := float64(c.Patient.Mass.Middle), c.Models[i].Regimen.Unit.String()
+		if p.name == PlanInfusion {
+			amount += "/h"
+		}
+		for _, e := range []struct {
+			name, sign string
+			z, d       float64
+		}{{"Amount, nine in ten, low end", "−", z90, about[0]}, {"Amount, nine in ten, high end", "", z90, about[1]},
+			{"Amount, even odds, low end", "−", z50, about[0]}, {"Amount, even odds, high end", "", z50, about[1]}} {
+			z := e.z
+			if e.sign != "" {
+				z = -z
+			}
+			s.add(e.name, "D·exp("+e.sign+"z·sd of the amount)", fmt.Sprintf("%s %s × exp(%s%s × %s)", f6(e.d*w), amount, e.sign, f6(e.z), f6(sp.amount)), e.d*w*math.Exp(z*sp.amount), amount, "as above")
+		}
+	}
+	if p.name == PlanOnce {
+		sd := n.volumeSpread(c, i)
+		d := c.Models[i].Regimen.PerKg
+		v := rangeAbout(d, sd, z90)
+		s.add("By volume, nine in ten, low end", "d·exp(−1.645·sd)", f6(d[0])+" "+unit+" × exp(−1.645 × "+f6(sd)+")", v.Low, unit, "volume per kg: 1.10 within mammals (218 pairs), 1.46 elsewhere, assumed")
+		s.add("By volume, nine in ten, high end", "d·exp(1.645·sd)", f6(d[1])+" "+unit+" × exp(1.645 × "+f6(sd)+")", v.High, unit, "as above")
+	}
+}
+
+// intervalWords lists the intervals that a clock plan chose from.
+func (n *numbers) intervalWords(c *Case, i int) string {
+	r := &c.Models[i].Regimen
+	longest := longestInterval(r, c.Drug.Activity, c.Drug.Depot)
+	hs := []float64{float64(r.Interval.Hours)}
+	for _, h := range c.Method.Intervals {
+		if float64(h) <= longest*(1+1e-12) {
+			hs = append(hs, float64(h))
+		}
+	}
+	slices.Sort(hs)
+	var words []string
+	for _, h := range slices.Compact(hs) {
+		words = append(words, f6(h))
+	}
+	return strings.Join(words, ", ") + " h"
 }

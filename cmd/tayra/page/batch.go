@@ -63,7 +63,6 @@ func (s *server) batch(w http.ResponseWriter, r *http.Request) {
 	if !ok {
 		return
 	}
-	w.Header().Set("Content-Type", "application/x-ndjson")
 	line := json.NewEncoder(w)
 	b := &batchWork{total: len(data)}
 	if what == "worksheets" {
@@ -74,6 +73,7 @@ func (s *server) batch(w http.ResponseWriter, r *http.Request) {
 		}
 		b.bundle, b.laid = reports.NewPDFBundle(paper), map[int]*reports.LaidOut{}
 	}
+	w.Header().Set("Content-Type", "application/x-ndjson")
 	told := time.Now()
 	b.tell = func(rows int, share int) {
 		if time.Since(told) < 100*time.Millisecond {

@@ -182,7 +182,7 @@ func eval[T any](b *tab, expression string) T {
 	b.Helper()
 	ctx, cancel := context.WithTimeout(b.ctx, patience)
 	defer cancel()
-	v, err := chromedp.Run(ctx, chromedp.Evaluate[T](expression))
+	v, err := chromedp.Run(ctx, chromedp.Evaluate[T](expression, chromedp.EvalAwaitPromise))
 	if err != nil {
 		b.Fatalf("%s: %v", expression, err)
 	}

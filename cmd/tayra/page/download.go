@@ -31,18 +31,18 @@ func (s *server) record(w http.ResponseWriter, r *http.Request) {
 
 // worksheet gives the PDF, with the case in it.
 func (s *server) worksheet(w http.ResponseWriter, r *http.Request) {
-	c, ok := completeFrom(w, r)
-	if !ok {
-		return
-	}
 	paper, err := reports.ParsePaper(r.PathValue("paper"))
 	if err != nil {
 		refuse(w, http.StatusNotFound, err.Error())
 		return
 	}
+	c, ok := completeFrom(w, r)
+	if !ok {
+		return
+	}
 	data, err := reports.PDF(c.ws, reports.PDFOptions{Paper: paper, Case: c.file})
 	if err != nil {
-		refuse(w, http.StatusUnprocessableEntity, "No worksheet: "+err.Error())
+		refuse(w, understood, "No worksheet: "+err.Error())
 		return
 	}
 	attach(w, "application/pdf", fileName("worksheet", c, ".pdf"), data)
@@ -63,7 +63,7 @@ func completeFrom(w http.ResponseWriter, r *http.Request) (*work, bool) {
 		f := faultOf(e)
 		lines[i] = strings.TrimPrefix(f.Label+": ", ": ") + f.Text
 	}
-	refuse(w, http.StatusUnprocessableEntity, "Nothing to save yet: "+count(len(lines), "field is", "fields are")+" wrong or missing.", lines...)
+	refuse(w, understood, "Nothing to save yet: "+count(len(lines), "field is", "fields are")+" wrong or missing.", lines...)
 	return nil, false
 }
 

@@ -33,11 +33,11 @@ func (s *server) open(w http.ResponseWriter, r *http.Request) {
 	}
 	in, say, err := readFile(name, data)
 	if err != nil {
-		refuse(w, http.StatusUnprocessableEntity, name+" was not read.", strings.Split(err.Error(), "\n")...)
+		refuse(w, understood, name+" was not read.", strings.Split(err.Error(), "\n")...)
 		return
 	}
 	if lines := unplaceable(in); len(lines) > 0 {
-		refuse(w, http.StatusUnprocessableEntity, name+" was not read.", lines...)
+		refuse(w, understood, name+" was not read.", lines...)
 		return
 	}
 	reply(w, http.StatusOK, opened{Say: say, Pairs: pairsOf(in)})

@@ -14,12 +14,20 @@ import (
 
 func openedFrom(t testing.TB, name string, data []byte) opened {
 	t.Helper()
-	return decode[opened](t, answer(fileRequest("/open", name, data)), http.StatusOK)
+	w := answer(fileRequest("/open", name, data))
+	if w.Header().Get("Content-Type") == refusalType {
+		t.Fatalf("%s is refused: %s", name, w.Body)
+	}
+	return decode[opened](t, w, http.StatusOK)
 }
 
 func refusedFrom(t testing.TB, name string, data []byte) refusal {
 	t.Helper()
-	return decode[refusal](t, answer(fileRequest("/open", name, data)), http.StatusUnprocessableEntity)
+	w := answer(fileRequest("/open", name, data))
+	if w.Header().Get("Content-Type") != refusalType {
+		t.Fatalf("%s is read: %s", name, w.Body)
+	}
+	return decode[refusal](t, w, understood)
 }
 
 // A case comes back from everything that carries it: the case file, the record,
@@ -51,10 +59,10 @@ func TestFilesThatAreHostile(t *testing.T) {
 			data := example(t, filepath.Join("hostile", name))
 			if stage != "read" {
 				got := answer(fileRequest("/open", name, data))
-				if got.Code == http.StatusOK {
+				if got.Header().Get("Content-Type") != refusalType {
 					return
 				}
-				said := decode[refusal](t, got, http.StatusUnprocessableEntity)
+				said := decode[refusal](t, got, understood)
 				in, _, err := dose.ReadCase(name, data)
 				if err != nil || len(unplaceable(in)) == 0 || len(said.Lines) == 0 {
 					t.Errorf("refused: %+v", said)

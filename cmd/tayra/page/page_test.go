@@ -285,7 +285,7 @@ func TestRequestsThatThePageDoesNotSend(t *testing.T) {
 		{"too long a file", "POST", "/open", "application/octet-stream", make([]byte, maxFile+1), 413, "at most 16 MB"},
 		{"a file as something else", "POST", "/open", "application/json", []byte("case: x"), 415, "application/octet-stream"},
 		{"too long a name", "POST", "/animals", "application/json", long(maxWords), 400, "cannot be read"},
-		{"paper of another size", "POST", "/worksheet/a3", "application/json", []byte("[]"), 422, ""},
+		{"paper of another size", "POST", "/worksheet/a3", "application/json", []byte("[]"), 404, "paper"},
 		{"a case in the address", "GET", "/draft?patient.mass=41", "", nil, 405, ""},
 		{"a file out of the program", "GET", "/static/..%2fpage.go", "", nil, 404, ""},
 		{"a template", "GET", "/static/index.html", "", nil, 404, ""},

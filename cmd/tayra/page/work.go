@@ -84,6 +84,16 @@ type refusal struct {
 	Lines []string `json:"lines,omitempty"`
 }
 
+// understood is the status of a refusal that a user meets in common use, such
+// as a case file with a slip in it. It is no fault of the request, and a browser
+// would write one to its console.
+const understood = http.StatusOK
+
+// refusalType is the type of every refusal, by which the page knows it.
+const refusalType = "application/problem+json"
+
 func refuse(w http.ResponseWriter, status int, say string, lines ...string) {
-	reply(w, status, refusal{Say: say, Lines: lines})
+	w.Header().Set("Content-Type", refusalType)
+	w.WriteHeader(status)
+	json.NewEncoder(w).Encode(refusal{Say: say, Lines: lines})
 }

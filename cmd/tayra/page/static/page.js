@@ -28,8 +28,8 @@ async function send(path, body, { signal, headers = { "Content-Type": "applicati
     if (err.name === "AbortError") throw err;
     throw new Refused({ say: "The program behind this page does not answer. Is it still running? Nothing in the form is lost." });
   }
+  if (response.headers.get("Content-Type") === "application/problem+json") throw new Refused(await response.json());
   if (response.ok) return response;
-  if (response.headers.get("Content-Type") === "application/json") throw new Refused(await response.json());
   throw new Refused({ say: "Refused: " + (await response.text()).trim() });
 }
 
@@ -100,6 +100,8 @@ function show(answer) {
   if (answer.state !== "faults") showStops(answer.stops);
   showFaults();
   tell(answer.say, 500);
+  // A reason is typed between two parts that have just changed their heights.
+  if ($("overrides").contains(document.activeElement)) document.activeElement.scrollIntoView({ block: "nearest" });
 }
 
 // showFaults puts each fault beside its field once the field was left.
@@ -235,7 +237,7 @@ async function search(el, offer) {
   el.setAttribute("aria-expanded", String(!list.hidden));
   el.removeAttribute("aria-activedescendant");
   if (only) tell(answer.animal);
-  else if (answer.list.length) tell(answer.list.length + (answer.more ? " of " + (answer.list.length + answer.more) : "") + " animals listed; arrow keys choose.");
+  else if (answer.list.length) tell((answer.more ? answer.list.length + " of " + (answer.list.length + answer.more) : answer.list.length) + (answer.list.length === 1 ? " animal" : " animals") + " listed; arrow keys choose.");
   else if (!answer.animal) note.textContent = "no animal of this name";
 }
 
@@ -320,16 +322,17 @@ async function openFile(file) {
     const headers = { "Content-Type": "application/octet-stream", "X-File-Name": encodeURIComponent(file.name) };
     fill(await (await send("/open", file, { headers })).json());
   } catch (err) {
-    showLines(err.lines || []);
+    showLines([err.message, ...(err.lines || [])]);
     tell(err.message);
+    $("open-notes").focus();
   }
 }
 
+// showLines says what came of opening a file, and stays.
 function showLines(lines) {
-  const list = $("open-faults");
+  const list = $("open-notes");
   list.replaceChildren(...lines.map((text) => Object.assign(document.createElement("li"), { textContent: text })));
   list.hidden = !lines.length;
-  if (lines.length) list.focus();
 }
 
 // fill puts a case into the form, whatever its words are: one that the form does
@@ -356,6 +359,7 @@ function fill(answer) {
   changed(0);
   unsaved = false;
   tell(answer.say);
+  showLines([answer.say]);
   $("result").focus();
 }
 
@@ -405,6 +409,7 @@ $("example").addEventListener("click", async () => {
 $("clear").addEventListener("click", () => {
   if (unsaved && !confirm("Empty the form?")) return;
   empty();
+  showLines([]);
   changed(0);
   unsaved = false;
   form.elements["case"].focus();

@@ -22,11 +22,11 @@ type calculator struct {
 var stepUnits = regexp.MustCompile(`([0-9)]) ?(kcal/day|kJ/day|mL O2/h|J/h|mg/kg/day|mg/kg/h|mg/kg|IU/kg/day|IU/kg/h|IU/kg|mg/L|IU/L|mg/h|IU/h|L/kg|L/h|kg|mg|IU|g|h|W)\b`)
 
 func calculate(text string) (v float64, err error) {
+	for _, u := range []string{" kg/m²", " mg/m²", " m²", " °C"} { // no word ends in ² or begins with °
+		text = strings.ReplaceAll(text, u, "")
+	}
 	for {
 		next := stepUnits.ReplaceAllString(text, "$1")
-		for _, u := range []string{" kg/m²", " mg/m²", " m²", " °C"} { // no word ends in ² or begins with °
-			next = strings.ReplaceAll(next, u, "")
-		}
 		if next == text {
 			break
 		}

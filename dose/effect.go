@@ -62,7 +62,7 @@ type drugTraits struct {
 }
 
 func traitsOf(d *Drug) *drugTraits {
-	t := &drugTraits{reading: species.ReadDrug(d.Name, d.Class)}
+	t := &drugTraits{reading: readDrug(d.Name, d.Class)}
 	_, t.antibiotic = t.reading.Has(species.Antibacterial)
 	t.antibiotic = t.antibiotic || containsAny(joinedWords(d.Class), antibioticWords)
 	_, t.controlled = t.reading.Has(species.Controlled)

@@ -31,12 +31,19 @@ func hazardLevel(m *species.HazardMatch, c *Case) Level {
 	return Warn
 }
 
+// matchHazards and readDrug are variables so that a benchmark can draft without
+// them and tell what they cost.
+var (
+	matchHazards = species.MatchHazards
+	readDrug     = species.ReadDrug
+)
+
 // raiseHazards raises every row of the hazard table that concerns the case.
 func raiseHazards(c *Case, n *numbers) {
 	route := draftRoute(c, n)
 	find := n.recall.hazards
 	if find == nil {
-		find = species.MatchHazards
+		find = matchHazards
 	}
 	matches := find(c.Drug.Name, c.Drug.Class, c.Patient.Animal, route)
 	for i := range matches {

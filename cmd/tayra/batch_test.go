@@ -67,17 +67,23 @@ func TestBatchInterrupted(t *testing.T) {
 	if _, err := to.WriteString(table[:len(table)/2]); err != nil {
 		t.Fatal(err)
 	}
+	ended := make(chan error, 1)
+	go func() { ended <- slow.Wait() }()
 	part := filepath.Join(folder, "out.csv.part")
 	for {
 		if data, err := os.ReadFile(part); err == nil && bytes.Count(data, []byte("\n")) > 256 {
 			break
 		}
-		time.Sleep(time.Millisecond)
+		select {
+		case err := <-ended:
+			t.Fatalf("ended by itself: %v %s", err, said.String())
+		case <-time.After(time.Millisecond):
+		}
 	}
 	if err := slow.Process.Signal(os.Interrupt); err != nil {
 		t.Fatal(err)
 	}
-	slow.Wait()
+	<-ended
 	if slow.ProcessState.ExitCode() != exitFile {
 		t.Errorf("status %d: %s", slow.ProcessState.ExitCode(), said.String())
 	}

@@ -231,7 +231,6 @@ func stemReadings(out []reading, word string) []reading {
 type nearName struct {
 	key     string
 	letters uint32 // one bit a letter
-	sound   string
 	line    string
 	class   bool
 }
@@ -246,7 +245,7 @@ var nearNames = sync.OnceValue(func() (out struct{ hazard, trait []nearName }) {
 			if len(key) < 6 {
 				continue
 			}
-			n := nearName{key, letters(key), soundOf(key), l, i == 1}
+			n := nearName{key, letters(key), l, i == 1}
 			switch {
 			case strings.HasSuffix(l, "\thazard"):
 				out.hazard = append(out.hazard, n)
@@ -316,12 +315,26 @@ func nearest(word string, names []nearName) []nearName {
 	for _, n := range names {
 		// A name inside a longer word is two names run together, or the name
 		// of a derivative.
-		if len(n.key) >= soundLetters && (n.sound == sound || strings.Contains(word, n.key)) {
+		if len(n.key) < soundLetters {
+			continue
+		}
+		if strings.Contains(word, n.key) || abs(len(n.key)-len(word)) <= soundSlack && soundOf(n.key) == sound {
 			hits = append(hits, n)
 		}
 	}
 	slices.SortStableFunc(hits, func(a, b nearName) int { return len(b.key) - len(a.key) })
 	return hits
+}
+
+// soundSlack is how far apart in length two spellings of one sound may be: a
+// bound that spares most names the comparison.
+const soundSlack = 6
+
+func abs(n int) int {
+	if n < 0 {
+		return -n
+	}
+	return n
 }
 
 // letters has a bit for each letter of the alphabet in a word, and one for

@@ -85,7 +85,7 @@ func (k *checker) text(e Entry, field string) string {
 		if r == '\n' || r == '\t' || r == '\r' {
 			continue
 		}
-		if unicode.IsControl(r) || isBidi(r) || r == utf8.RuneError {
+		if unicode.IsControl(r) || isUnseen(r) || r == utf8.RuneError {
 			k.fail(e, field, fmt.Sprintf("holds the invisible character U+%04X", r), "retype the text without it")
 			return ""
 		}
@@ -93,9 +93,16 @@ func (k *checker) text(e Entry, field string) string {
 	return strings.Join(strings.Fields(s), " ")
 }
 
-// isBidi says whether a rune can turn or hide the letters around it.
-func isBidi(r rune) bool {
-	return r == 0x061C || r >= 0x200B && r <= 0x200F || r >= 0x202A && r <= 0x202E || r >= 0x2060 && r <= 0x2069 || r == 0xFEFF || r == 0x00AD
+// isUnseen says whether a rune is nothing to the eye, or turns or hides the
+// letters around it: formatting and bidirectional marks, tags, variation
+// selectors, separators of lines, letters that are blank by definition, and
+// those that no standard gives a form.
+func isUnseen(r rune) bool {
+	switch r {
+	case 0x034F, 0x115F, 0x1160, 0x17B4, 0x17B5, 0x3164, 0xFFA0, 0x2800:
+		return true
+	}
+	return unicode.In(r, unicode.Cf, unicode.Zl, unicode.Zp, unicode.Co, unicode.Variation_Selector)
 }
 
 // word reads one of a few words.

@@ -304,6 +304,20 @@ func (b *tab) picture(name string) {
 
 func (b *tab) shoot(name string) {
 	b.Helper()
+	ctx, cancel := context.WithTimeout(b.ctx, patience)
+	defer cancel()
+	png, err := chromedp.Run(ctx, chromedp.CaptureScreenshot())
+	if err == nil {
+		err = os.WriteFile(filepath.Join(b.artefacts(), "page-"+name+"-"+b.screen.String()+".png"), png, 0o666)
+	}
+	if err != nil {
+		b.Fatal(err)
+	}
+}
+
+// artefacts is the folder for what a run leaves to be looked at.
+func (b *tab) artefacts() string {
+	b.Helper()
 	folder := os.Getenv("TAYRA_ARTEFACTS")
 	if folder == "" {
 		folder = b.TempDir()
@@ -311,15 +325,7 @@ func (b *tab) shoot(name string) {
 	if err := os.MkdirAll(folder, 0o777); err != nil {
 		b.Fatal(err)
 	}
-	ctx, cancel := context.WithTimeout(b.ctx, patience)
-	defer cancel()
-	png, err := chromedp.Run(ctx, chromedp.CaptureScreenshot())
-	if err == nil {
-		err = os.WriteFile(filepath.Join(folder, "page-"+name+"-"+b.screen.String()+".png"), png, 0o666)
-	}
-	if err != nil {
-		b.Fatal(err)
-	}
+	return folder
 }
 
 func clickID(id string) chromedp.Action[chromedp.Void] { return chromedp.Click(chromedp.ID(id)) }

@@ -98,7 +98,7 @@ func TestFilesThatAreNoCase(t *testing.T) {
 	}{
 		{"empty", nil, "no case"},
 		{"half a worksheet", pdf[:len(pdf)/2], "cut off"},
-		{"the worksheets of a list", sheets, "has lost the record"}, // printed, they carry no record
+		{"the worksheets of a list", sheets, "no record"}, // printed, they carry no record
 		{"half a record", []byte(record[:len(record)/2]), "no record"},
 		{"a record of another format", []byte(strings.Replace(record, dose.Format, "tayra-worksheet/9", 1)), "tayra-worksheet/9"},
 		{"a picture", []byte("\x89PNG\r\n\x1a\n\x00\x00"), ""},

@@ -74,6 +74,7 @@ function blank() {
   $("stale").hidden = false;
   $("result").setAttribute("aria-busy", "true");
   clearTimeout(saying);
+  $("say").textContent = "";
 }
 
 async function draft() {

@@ -45,7 +45,7 @@ type FitAt struct {
 type FitLeftOut struct {
 	Species   string  `json:"species"`
 	Predicted float64 `json:"predicted"`
-	FoldError float64 `json:"fold_error"`
+	FoldError float64 `json:"fold_error"` // predicted over observed
 }
 
 // FitFixed is the line with the usual exponent instead of the fitted one.

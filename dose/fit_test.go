@@ -9,7 +9,7 @@ import (
 	"tayra/species"
 )
 
-func targetOf(t *testing.T, name, mass string) FitTarget {
+func targetOf(t testing.TB, name, mass string) FitTarget {
 	t.Helper()
 	a, err := species.Find(name)
 	if err != nil {

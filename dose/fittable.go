@@ -92,8 +92,8 @@ type fitRow struct {
 }
 
 const (
-	maxFitBytes = 4 << 20
-	maxFitRows  = 10000
+	maxFitBytes = 1 << 20
+	maxFitRows  = 2000 // whose record stays within what can be read back
 )
 
 // ReadFitTable reads a table of species data: RFC 4180 with commas, semicolons
@@ -108,7 +108,7 @@ func ReadFitTable(file string, data []byte) (*FitInput, error) {
 		return &InputError{File: file, Line: line, Column: col, Field: field, Problem: problem, Remedy: remedy}
 	}
 	if len(data) > maxFitBytes {
-		return nil, InputErrors{fault(0, 0, "", fmt.Sprintf("%d bytes", len(data)), "a table of species data has at most 4 MB")}
+		return nil, InputErrors{fault(0, 0, "", fmt.Sprintf("%d bytes", len(data)), "a table of species data has at most 1 MB")}
 	}
 	data = bytes.TrimPrefix(data, []byte("\xef\xbb\xbf"))
 	if !utf8.Valid(data) {
@@ -301,6 +301,9 @@ func unitOf(text string) string {
 // in one unit from top to bottom: a per-kg value among per-animal ones is the
 // slip that such a table hides best.
 func (in *FitInput) check() ([]fitRow, error) {
+	if len(in.Rows) > maxFitRows {
+		return nil, InputErrors{{File: in.File, Problem: "too many rows", Remedy: fmt.Sprintf("a table of species data has at most %d", maxFitRows)}}
+	}
 	k := &checker{file: in.File}
 	var rows []fitRow
 	first := map[string]struct {

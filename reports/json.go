@@ -41,7 +41,7 @@ func Digest(record []byte) string {
 
 const (
 	// maxRecord bounds a record in bytes; the largest worksheet, drafted from a
-	// line over 10,000 animals, has about half of it.
+	// line over 2,000 animals, has about half of it.
 	maxRecord = 16 << 20
 	// maxRecordDepth bounds its nesting; a worksheet nests 8 deep.
 	maxRecordDepth = 32
@@ -137,6 +137,9 @@ func plainJSONError(err error) string {
 	var t *json.UnmarshalTypeError
 	if errors.As(err, &t) {
 		return fmt.Sprintf("%s holds a %s where the record has another kind of value", strconv.Quote(t.Field), t.Value)
+	}
+	if errors.Is(err, io.ErrUnexpectedEOF) { // in the middle of a word or text
+		return "it ends too early"
 	}
 	var s *json.SyntaxError
 	if errors.As(err, &s) {

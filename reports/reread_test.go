@@ -468,3 +468,72 @@ func FuzzReread(f *testing.F) {
 		}
 	})
 }
+
+// fittedWorksheet is a worksheet whose dose comes from a line fitted to a table.
+func fittedWorksheet(t testing.TB, table *dose.FitInput) []byte {
+	t.Helper()
+	text, err := os.ReadFile("../testdata/anteater.yaml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	in, _, err := dose.ReadCase("anteater.yaml", text)
+	if err != nil {
+		t.Fatal(err)
+	}
+	in.Fit = &dose.FitCase{Table: *table, Average: dose.E("2 mg/L"), Source: dose.E("invented for this test")}
+	c, err := in.Check()
+	if err != nil {
+		t.Fatal(err)
+	}
+	ws, err := dose.Draft(c)
+	if err != nil {
+		t.Fatal(err)
+	}
+	b, err := PDF(ws, PDFOptions{Case: text})
+	if err != nil {
+		t.Fatal(err)
+	}
+	return b
+}
+
+// A worksheet from a fitted line carries the table, and is the same again; a
+// changed cell of the table is found.
+func TestRereadFitted(t *testing.T) {
+	text, err := os.ReadFile("../testdata/clearances.csv")
+	if err != nil {
+		t.Fatal(err)
+	}
+	table, err := dose.ReadFitTable("clearances.csv", text)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, keep := range []bool{false, true} {
+		table.KeepAll = keep
+		b := fittedWorksheet(t, table)
+		if r := reread(t, b); r.Verdict != Same {
+			t.Errorf("keep %v: %s %v %v %q %s", keep, r.Verdict, r.Differences, r.CaseFile, r.Why, r.Pages)
+		}
+		changed := recordChanged(t, b, replaced(`"clearance": "62 mL/min"`, `"clearance": "26 mL/min"`))
+		if r := reread(t, changed); r.Verdict != Differs || !strings.Contains(paths(r.Differences), "fit.a ") {
+			t.Errorf("keep %v: %s %s", keep, r.Verdict, paths(r.Differences))
+		}
+	}
+}
+
+// The largest worksheet that can be drafted, from a table of 2,000 animals and all that
+// it may hold, can
+// be read back.
+func TestRereadLargest(t *testing.T) {
+	table := &dose.FitInput{File: "large.csv", Parameter: dose.Clearance}
+	for i := range 2000 {
+		w := 0.02 * float64(1+i)
+		table.Rows = append(table.Rows, dose.FitRowInput{Species: dose.E(fmt.Sprintf("animal number %d of the table, %s", i, strings.Repeat("long ", 20))), Mass: dose.E(fmt.Sprintf("%.4f kg", w)),
+			Clearance: dose.E(fmt.Sprintf("%.5f L/h", w*(1+float64(i%7)/10))), Volume: dose.E(fmt.Sprintf("%.5f L", w*(1+float64(i%5)/10))),
+			HalfLife: dose.E(fmt.Sprintf("%.5f h", 1+float64(i%11)/10)), Dose: dose.E(fmt.Sprintf("%.5f mg", w)),
+			Source: dose.E("invented for this test: " + strings.Repeat("a citation of some length, ", 10))})
+	}
+	b := fittedWorksheet(t, table)
+	if r := reread(t, b); r.Verdict != Same {
+		t.Errorf("%s %q %s", r.Verdict, r.Why, r.Pages)
+	}
+}

@@ -31,7 +31,7 @@ import (
 )
 
 // MaxWorksheetBytes is the largest file that is read as a worksheet. A common
-// one has some 100 kB, one drafted from a line over 10,000 animals a few MB.
+// one has some 100 kB, one drafted from a line over 2,000 animals about one MB.
 const MaxWorksheetBytes = 16 << 20
 
 const (
@@ -77,15 +77,20 @@ func (e *WorksheetError) Error() string {
 // Unwrap gives what the PDF library said, where it did.
 func (e *WorksheetError) Unwrap() error { return e.err }
 
-const giveOriginal = "give the file as this program wrote it"
+const (
+	giveOriginal = "give the file as this program wrote it"
+	// lostRecord is for a document that may once have been a worksheet.
+	lostRecord = "a worksheet that was printed again or saved by another program may have lost the record that it carried; " + giveOriginal
+	// attachedFit is the record of a line fitted to data, set on paper alone.
+	attachedFit = "fit.json"
+)
 
 func refused(err error, problem, remedy string) error {
 	return &WorksheetError{Problem: problem, Remedy: remedy, err: err}
 }
 
-func foreign(problem string) error {
-	return &WorksheetError{Problem: "this is no worksheet of this program: " + problem, Foreign: true,
-		Remedy: "a worksheet that was printed again or saved by another program may have lost the record that it carried; " + giveOriginal}
+func foreign(problem, remedy string) error {
+	return &WorksheetError{Problem: "this is no worksheet of this program: " + problem, Foreign: true, Remedy: remedy}
 }
 
 // withoutFolder keeps the PDF library from making a folder for its configuration
@@ -99,17 +104,17 @@ var withoutFolder = sync.OnceFunc(api.DisableConfigDir)
 func ReadWorksheetPDF(data []byte) (*Attached, error) {
 	switch {
 	case len(data) == 0:
-		return nil, foreign("the file is empty")
+		return nil, foreign("the file is empty", giveOriginal)
 	case len(data) > MaxWorksheetBytes:
 		return nil, refused(nil, fmt.Sprintf("the file has over %d MB, and no worksheet has", MaxWorksheetBytes>>20), giveOriginal)
 	case !bytes.Contains(data[:min(len(data), endOfFile)], []byte("%PDF-")):
-		return nil, foreign("the file is no PDF")
+		return nil, foreign("the file is no PDF", giveOriginal)
 	}
 	if err := checkEnd(data); err != nil {
 		return nil, err
 	}
 	if !bytes.Contains(data, []byte("/EmbeddedFile")) {
-		return nil, foreign("no file is attached to it")
+		return nil, foreign("no file is attached to it", lostRecord)
 	}
 	ctx, err := openPDF(data)
 	if err != nil {
@@ -264,6 +269,8 @@ func openPDF(data []byte) (ctx *model.Context, err error) {
 type pdfReader struct {
 	ctx   *model.Context
 	names int // nodes of the tree of attachments that may still be visited
+
+	lineAlone bool // the record of a fitted line is attached
 }
 
 // attached collects the files of our two names and what else is needed.
@@ -288,10 +295,15 @@ func (p *pdfReader) attached() (a *Attached, err error) {
 		}
 	}
 	if a.Record == nil {
-		if a.Digest != "" || strings.HasPrefix(a.Producer, "tayra ") {
+		switch {
+		case p.lineAlone:
+			return nil, foreign("it is a line fitted to data, which holds no dose", "`tayra fit` draws it again from the table attached to it")
+		case a.Digest != "":
 			return nil, refused(nil, "the worksheet has lost the record that it carried", giveOriginal)
+		case strings.HasPrefix(a.Producer, "tayra "):
+			return nil, foreign("it is a figure, or a bundle of worksheets for the printer, which carry no record", "give the worksheet's own file")
 		}
-		return nil, foreign("no file named " + attachedRecord + " is attached to it")
+		return nil, foreign("no file named "+attachedRecord+" is attached to it", lostRecord)
 	}
 	return a, nil
 }
@@ -376,6 +388,9 @@ func (p *pdfReader) file(a *Attached, spec types.Dict) error {
 		into, limit = &a.Record, maxRecord
 	case attachedCase:
 		into, limit = &a.Case, maxCaseFile
+	case attachedFit:
+		p.lineAlone = true
+		return nil
 	default:
 		return nil
 	}

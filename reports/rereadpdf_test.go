@@ -17,6 +17,8 @@ import (
 	"github.com/pdfcpu/pdfcpu/pkg/pdfcpu/model"
 
 	"tayra/dose"
+	"tayra/metabolic"
+	"tayra/species"
 )
 
 // anteaterPDF is a worksheet of the example case.
@@ -171,6 +173,21 @@ func TestReadRefuses(t *testing.T) {
 	for i := range 1000 {
 		fmt.Fprintf(&manyNames, "(a%04d) 5 0 R ", i)
 	}
+	b := NewPDFBundle(A4)
+	sheet, err := b.LayOut(exampleNamed(t, "anteater"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	b.Add(sheet)
+	bundle, err := b.Bytes()
+	if err != nil {
+		t.Fatal(err)
+	}
+	line, err := FitPDF(clearances(t), FitPDFOptions{Date: "2026-11-30"})
+	if err != nil {
+		t.Fatal(err)
+	}
+
 	bomb := packed(make([]byte, 64<<20)) // 64 kB
 	content := stream("/Type /EmbeddedFile", []byte("{}"))
 	many := []string{catalog, pageTree, emptyPage, kids(5)}
@@ -208,7 +225,9 @@ func TestReadRefuses(t *testing.T) {
 		{"a tree in a circle", rawPDF("", catalog, pageTree, emptyPage, kids(4), content), "more attachments", false},
 		{"pages in a circle", rawPDF("", catalog, "<< /Kids [2 0 R] >>", emptyPage, "<< /Names [] >>", content), "no file named record.json", true},
 		{"a catalog that is none", rawPDF("", "(/EmbeddedFile)"), "damaged", false},
-		{"lost its record", rawPDF("/Info 5 0 R", catalog, pageTree, emptyPage, "<< /Names [] >>", "<< /Producer (tayra 0.1.0) >>", content), "has lost the record", false},
+		{"lost its record", rawPDF("/Info 5 0 R", catalog, pageTree, emptyPage, "<< /Names [] >>", "<< /Producer (tayra 0.1.0) /Keywords (draft, record 0123456789abcdef) >>", content), "has lost the record", false},
+		{"a bundle for the printer", bundle, "carry no record", true},
+		{"a line fitted to data", line, "a line fitted to data", true},
 		{"one stream named often", oneStreamOften(), "more reading", false},
 		{"objects by the hundred thousand", manyObjects(100000), "more reading", false},
 		{"an object without end", rawPDF("", strings.Repeat("[", 1<<20), content), "more reading", false},
@@ -232,6 +251,28 @@ func TestReadRefuses(t *testing.T) {
 			}
 		})
 	}
+}
+
+// clearances is the line of the example table, read at the anteater's mass.
+func clearances(t testing.TB) *dose.FitRecord {
+	t.Helper()
+	text, err := os.ReadFile("../testdata/clearances.csv")
+	if err != nil {
+		t.Fatal(err)
+	}
+	in, err := dose.ReadFitTable("clearances.csv", text)
+	if err != nil {
+		t.Fatal(err)
+	}
+	a, err := species.Find("giant anteater")
+	if err != nil {
+		t.Fatal(err)
+	}
+	f, err := dose.Fit(in, dose.FitTarget{Animal: a, Mass: metabolic.BodyMass{Low: 41, Middle: 41, High: 41}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	return f
 }
 
 // oneStreamOften has one large stream under a thousand numbers.

@@ -58,6 +58,9 @@ func Words(s string) (string, error) {
 			if r == utf8.RuneError && size <= 1 {
 				return "", &LetterError{"the name is not valid UTF-8"}
 			}
+			if isUnseen(r) {
+				return "", &LetterError{fmt.Sprintf("the name contains %s, which is nothing to the eye", escaped(r))}
+			}
 			plain, err := latin(r)
 			if err != nil {
 				return "", err
@@ -73,6 +76,14 @@ func Words(s string) (string, error) {
 		}
 	}
 	return string(out), nil
+}
+
+// isUnseen reports whether a letter is blank or only bends the look of its
+// neighbours: separators of lines, variation selectors, the joiner of
+// graphemes, the blank Braille pattern, and what stands for a letter that was
+// lost.
+func isUnseen(r rune) bool {
+	return r == 0x034F || r == 0x2800 || r == utf8.RuneError || unicode.In(r, unicode.Zl, unicode.Zp, unicode.Variation_Selector)
 }
 
 // latin gives the plain letters of one non-ASCII character: "" to drop it,

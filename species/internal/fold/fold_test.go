@@ -43,6 +43,11 @@ func TestWordsRefuses(t *testing.T) {
 		"Canis\u0085":            "U+0085",          // C1 control
 		"狼":                      "U+72FC",          // a wolf, but not in the table
 		"C\xffnis":               "not valid UTF-8", //
+		"Canis\u2028lupus":       "U+2028",          // line separator
+		"Canis\ufe0f":            "U+FE0F",          // variation selector
+		"Ca\u034fnis":            "U+034F",          // grapheme joiner
+		"Ca\u2800nis":            "U+2800",          // blank Braille pattern
+		"Ca\ufffdnis":            "U+FFFD",          // a letter that was lost
 		strings.Repeat("a", 201): "201 bytes",
 	} {
 		got, err := Words(in)

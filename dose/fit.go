@@ -261,6 +261,20 @@ func (f *FitRecord) caution(target FitTarget) {
 	if high/low < 10 {
 		add(NarrowMasses, Warn, fmt.Sprintf("The masses span %s-fold, under 10-fold: the exponent is poorly known.", f3(high/low)), "Martinez et al. 2006 (abstract read; detail from memory)", map[string]float64{"span": high / low})
 	}
+	// The masses of animals that the table knows, under whatever name.
+	cannotBe := func(a *species.Animal, mass metabolic.Mass, what string) {
+		if implausible(a, mass, Adult) {
+			add(ImplausibleMass, Warn, fmt.Sprintf("%s, %s, cannot be that of an adult %s, which weighs %s to %s: grams for kilograms, or another animal? The line was fitted and read as it stands.",
+				what, metabolic.FormatMass(mass), animalWords(a), metabolic.FormatMass(a.AdultLow), metabolic.FormatMass(a.AdultHigh)), "",
+				map[string]float64{"mass_kg": float64(mass), "adult_low_kg": float64(a.AdultLow), "adult_high_kg": float64(a.AdultHigh)})
+		}
+	}
+	for _, q := range f.Points {
+		if a, err := species.Find(q.Species); err == nil {
+			cannotBe(a, metabolic.Mass(q.MassKg), "The mass of the row "+q.Species)
+		}
+	}
+	cannotBe(target.Animal, target.Mass.Middle, "The mass of the target")
 	w := float64(target.Mass.Middle)
 	if w < low || w > high {
 		add(OutsideMasses, Warn, fmt.Sprintf("The target's mass, %s, lies outside the data, %s to %s: beyond them the error widens fast.", metabolic.FormatMass(target.Mass.Middle), metabolic.FormatMass(metabolic.Mass(low)), metabolic.FormatMass(metabolic.Mass(high))),

@@ -333,6 +333,7 @@ func (in *FitInput) check() ([]fitRow, error) {
 		if out.name == "" {
 			k.fail(r.Species, "species", "missing", "name the animal: the row is labelled by it")
 		}
+		k.text(r.Source, "source") // kept in the record
 		m, ok := need(k, r.Mass, r.Species, "mass", "write the body mass with its unit, such as 18 kg", metabolic.ParseBodyMass)
 		if ok {
 			out.mass = float64(m.Middle)

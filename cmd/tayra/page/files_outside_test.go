@@ -87,6 +87,10 @@ func TestAListIsWorkedOut(t *testing.T) {
 	if name != "animals-worksheets.pdf" || !bytes.HasPrefix(sheets, []byte("%PDF-")) {
 		t.Errorf("%s, %d bytes", name, len(sheets))
 	}
+	b.typeIn("date", "2026-12-24") // of another day
+	if !eval[bool](b, `document.getElementById("list-keep").hidden`) || strings.Contains(b.text("#list-result"), "mg/kg") {
+		t.Error("a list's result stands beside another date")
+	}
 	b.typeIn("date", "soon")
 	b.drop("animals.csv", example(t, "batch/animals.csv"))
 	b.until(`document.getElementById("say").textContent.includes("is not a date")`)

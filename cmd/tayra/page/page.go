@@ -18,6 +18,7 @@ import (
 	"embed"
 	"encoding/json"
 	"html/template"
+	"io"
 	"net/http"
 	"runtime"
 	"sync"
@@ -39,9 +40,12 @@ const (
 
 // server holds what all requests share.
 type server struct {
-	host  string // as the browser's address bar has it: 127.0.0.1:PORT
-	quick chan struct{}
-	slow  chan struct{}
+	host string // as the browser's address bar has it: 127.0.0.1:PORT
+
+	// Many tabs wait in line for the cores rather than share them: the first in
+	// line is answered as fast as if it were alone. Work that takes longer has
+	// lines of its own.
+	quick, papers, tables chan struct{}
 }
 
 // Handler serves the page to a browser that reaches it under host, such as
@@ -50,26 +54,25 @@ type server struct {
 func Handler(host string) http.Handler {
 	cores := runtime.GOMAXPROCS(0)
 	s := &server{
-		host: host,
-		// Many tabs wait in line for the cores rather than share them: the
-		// first in line is answered as fast as if it were alone.
-		quick: make(chan struct{}, cores),
-		slow:  make(chan struct{}, cores),
+		host:   host,
+		quick:  make(chan struct{}, cores),
+		papers: make(chan struct{}, cores),
+		tables: make(chan struct{}, 1), // one takes all cores
 	}
 	mux := http.NewServeMux()
 	mux.HandleFunc("GET /{$}", s.index)
 	mux.HandleFunc("GET /static/{name}", s.static)
 	post := func(path string, line chan struct{}, limit int64, handle http.HandlerFunc) {
-		mux.Handle("POST "+path, inLine(line, http.MaxBytesHandler(handle, limit)))
+		mux.Handle("POST "+path, whole(limit, inLine(line, handle)))
 	}
 	post("/draft", s.quick, maxCase, s.draft)
 	post("/animals", s.quick, maxWords, s.animals)
 	post("/example", s.quick, maxWords, s.example)
-	post("/open", s.slow, maxFile, s.open)
+	post("/open", s.papers, maxFile, s.open)
 	post("/case", s.quick, maxCase, s.caseFile)
 	post("/record", s.quick, maxCase, s.record)
-	post("/worksheet/{paper}", s.slow, maxCase, s.worksheet)
-	post("/batch/{what}", s.slow, maxTable, s.batch)
+	post("/worksheet/{paper}", s.papers, maxCase, s.worksheet)
+	post("/batch/{what}", s.tables, maxTable, s.batch)
 	return s.guard(mux)
 }
 
@@ -81,6 +84,26 @@ func Limits(srv *http.Server) {
 	srv.WriteTimeout = 60 * time.Second
 	srv.IdleTimeout = 2 * time.Minute
 	srv.MaxHeaderBytes = 16 << 10
+}
+
+// whole reads a request to its end before it takes a place in line: one that
+// arrives slowly, or never, keeps nobody waiting.
+func whole(limit int64, next http.Handler) http.Handler {
+	return http.HandlerFunc(func(w http.ResponseWriter, r *http.Request) {
+		data, err := io.ReadAll(http.MaxBytesReader(w, r.Body, limit))
+		r.Body = io.NopCloser(io.MultiReader(bytes.NewReader(data), unread{err}))
+		next.ServeHTTP(w, r)
+	})
+}
+
+// unread ends a body as its reading ended.
+type unread struct{ err error }
+
+func (u unread) Read([]byte) (int, error) {
+	if u.err == nil {
+		return 0, io.EOF
+	}
+	return 0, u.err
 }
 
 // inLine lets as many requests through at once as the line is wide.

@@ -5,6 +5,7 @@ import (
 	"encoding/json"
 	"fmt"
 	"io"
+	"net"
 	"net/http"
 	"net/http/httptest"
 	"net/url"
@@ -316,6 +317,31 @@ func TestAddressesHoldNothingTyped(t *testing.T) {
 			t.Errorf("the script fetches %s", m[1])
 		}
 	}
+}
+
+// Requests that never end hold no place in line: with many of them open, a case
+// is drafted all the same. The server has no time limits here, so that nothing
+// but the order of the work can end the test.
+func TestSlowRequestsKeepNobodyWaiting(t *testing.T) {
+	srv := httptest.NewUnstartedServer(nil)
+	srv.Config.Handler = Handler(srv.Listener.Addr().String())
+	srv.Start()
+	defer srv.Close()
+	host := srv.Listener.Addr().String()
+	for range 40 {
+		conn, err := net.Dial("tcp", host)
+		if err != nil {
+			t.Fatal(err)
+		}
+		defer conn.Close()
+		fmt.Fprintf(conn, "POST /draft HTTP/1.1\r\nHost: %s\r\nContent-Type: application/json\r\nContent-Length: 1000\r\n\r\n[", host)
+	}
+	body, _ := json.Marshal(pairsOfCase(t, "anteater.yaml"))
+	r, err := http.Post(srv.URL+"/draft", "application/json", bytes.NewReader(body))
+	if err != nil || r.StatusCode != 200 {
+		t.Fatal(err)
+	}
+	r.Body.Close()
 }
 
 func ExampleHandler() {

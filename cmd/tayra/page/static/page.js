@@ -58,6 +58,7 @@ function changed(wait = 250) {
   turn++;
   unsaved = true;
   blank();
+  if (asked !== undefined && asked !== sharedFields()) forgetList();
   countFilled();
   clearTimeout(timer);
   running?.abort();
@@ -466,6 +467,20 @@ window.addEventListener("beforeunload", (e) => {
 // ---- A list of animals
 
 let list, result, working; // the file as it was opened, what came of it, the work on it
+let asked; // what all its rows shared when it was worked out
+
+// sharedFields are the fields of the form that hold for every row.
+function sharedFields() {
+  return JSON.stringify([...new FormData(form)].filter(([name]) => /^(date|prepared_by|method\..*)$/.test(name)));
+}
+
+// forgetList takes a result away that was worked out with other fields.
+function forgetList() {
+  asked = undefined;
+  working?.abort();
+  $("list-keep").hidden = true;
+  $("list-result").textContent = "The date, who prepares it or the method has changed: open the list again.";
+}
 
 async function openList(file) {
   list = file;
@@ -484,12 +499,12 @@ async function openList(file) {
 async function batch(what) {
   working?.abort();
   const mine = (working = new AbortController());
-  const shared = [...new FormData(form)].filter(([name]) => /^(date|prepared_by|method\..*)$/.test(name));
+  asked = sharedFields();
   $("list-work").hidden = false;
   $("list-bar").value = 0;
   tell("Working on " + list.name + " …");
   try {
-    const headers = { "Content-Type": "application/octet-stream", "X-File-Name": encodeURIComponent(list.name), "X-Shared": encodeURIComponent(JSON.stringify(shared)) };
+    const headers = { "Content-Type": "application/octet-stream", "X-File-Name": encodeURIComponent(list.name), "X-Shared": encodeURIComponent(asked) };
     const response = await send("/batch/" + what + "?paper=" + $("paper").value, list, { headers, signal: mine.signal });
     const reader = response.body.getReader();
     let rest = new Uint8Array();

@@ -10,6 +10,7 @@ import (
 	"os"
 	"path/filepath"
 	"regexp"
+	"slices"
 	"strings"
 	"testing"
 
@@ -201,6 +202,10 @@ func TestRereadEdited(t *testing.T) {
 	forged := recordChanged(t, b, replaced(drafted, digit))
 	forged = restated(forged, record.Digest, reread(t, forged).Digest)
 
+	if r := reread(t, recordChanged(t, b, replaced(drafted, digit))); !strings.HasPrefix(r.Pages, "The pages are those that are drawn from the inputs;") {
+		t.Errorf("a digit of the record, the pages as they were: %s", r.Pages)
+	}
+	junk := bytes.Replace(b, []byte("\nendstream\n"), []byte("\nendstream "), 1)
 	for _, k := range []struct {
 		name    string
 		data    []byte
@@ -224,6 +229,7 @@ func TestRereadEdited(t *testing.T) {
   "input"`)), "prepared_by", "", true, "", Differs},
 		{"a key of ours that is not", recordChanged(t, b, replaced(`"date":`, `"weather": "fine", "date":`)), "weather", "", true, "", Differs},
 		{"the case file", caseEdited, "", "patient.mass", false, "one of the two was changed", Differs},
+		{"a space between the parts", junk, "", "", false, "changed: ", Differs},
 		{"the first page", pageEdited(1), "", "", false, "changed: page 1.", Differs},
 		{"the second page", pageEdited(2), "", "", false, "changed: page 2.", Differs},
 		{"something behind", append(bytes.Clone(b), "% a note\nstartxref\n"+lastStart(b)+"\n%%EOF\n"...), "", "", false, "added behind", Differs},
@@ -246,6 +252,27 @@ func TestRereadEdited(t *testing.T) {
 			t.Errorf("%s: no reason given: %s", k.name, r.Pages)
 		}
 	}
+}
+
+// Bytes that no reader of the page unpacks do not pass for another compressor.
+func TestSamePagesHiddenBytes(t *testing.T) {
+	b := anteaterPDF(t, PDFOptions{})
+	if ok, text := samePages(behindPacking(t, b), b, producer()); ok || !strings.Contains(text, "changed: page 1.") {
+		t.Error(text)
+	}
+}
+
+// behindPacking hides bytes behind the packed content of the first page.
+func behindPacking(t *testing.T, b []byte) []byte {
+	t.Helper()
+	at := bytes.Index(b, []byte("/Type /Page\n"))
+	p, ok := cutStream(b[at:])
+	if at < 0 || !ok {
+		t.Fatal("no page")
+	}
+	old, long := fmt.Sprintf("/Length %d", len(p.packed)), fmt.Sprintf("/Length %d", len(p.packed)+5)
+	page := bytes.Replace(p.before, []byte(old), []byte(long), 1)
+	return slices.Concat(b[:at], page, p.packed, []byte("notes"), p.after)
 }
 
 // lastStart is where the table of contents is.

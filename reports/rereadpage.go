@@ -3,11 +3,15 @@ package reports
 import (
 	"bytes"
 	"compress/zlib"
+	"errors"
 	"fmt"
 	"io"
 	"regexp"
+	"slices"
 	"strings"
 )
+
+const attachedPart = "an attached file"
 
 // samePages says how the pages of a file compare with those drawn again from
 // its record. ok is true when they are the same, byte for byte or, where only
@@ -23,7 +27,7 @@ func samePages(given, drawn []byte, producerThen string) (ok bool, text string) 
 	page := 0
 	var changed []string
 	note := func(part string) {
-		if len(changed) == 0 || changed[len(changed)-1] != part {
+		if !slices.Contains(changed, part) {
 			changed = append(changed, part)
 		}
 	}
@@ -34,32 +38,29 @@ func samePages(given, drawn []byte, producerThen string) (ok bool, text string) 
 			note("the number of its parts")
 			break
 		}
-		if !bytes.Equal(withoutLengths(g.before), withoutLengths(d.before)) {
+		content := ""
+		if okGiven {
+			// A page's content follows the page.
+			if bytes.Contains(d.before, []byte("/Type /Page\n")) {
+				page++
+				content = fmt.Sprintf("page %d", page)
+			} else if content = "a font or a figure"; bytes.Contains(d.before, []byte("/Type /EmbeddedFile")) {
+				content = attachedPart
+			}
+		}
+		same := !okGiven || sameContent(&g, &d)
+		x, y := withoutLengths(g.before), withoutLengths(d.before)
+		if !same && content == attachedPart {
+			x, y = withoutSums(x), withoutSums(y) // they follow from the content
+		}
+		if !bytes.Equal(x, y) {
 			note("what stands between its pages (its properties, such as the keywords with the digest, or its order)")
 		}
 		if !okGiven {
 			break
 		}
-		// A page's content follows the page.
-		isPage := bytes.Contains(d.before, []byte("/Type /Page\n"))
-		if isPage {
-			page++
-		}
-		want, err := d.unpack(maxRecord)
-		if err != nil {
-			note("a part that cannot be unpacked")
-			break
-		}
-		got, err := g.unpack(len(want))
-		if err != nil || !bytes.Equal(got, want) {
-			switch {
-			case isPage:
-				note(fmt.Sprintf("page %d", page))
-			case bytes.Contains(d.before, []byte("/Type /EmbeddedFile")):
-				note("an attached file")
-			default:
-				note("a font or a figure")
-			}
+		if !same {
+			note(content)
 		}
 		given, drawn = g.after, d.after
 	}
@@ -69,11 +70,14 @@ func samePages(given, drawn []byte, producerThen string) (ok bool, text string) 
 	if now := producer(); producerThen != "" && producerThen != now {
 		return false, "The file was saved again by another program (" + clip(producerThen) + "), so its pages cannot be held against those drawn from the record."
 	}
+	if len(changed) == 1 && changed[0] == attachedPart {
+		return false, "The pages are those that are drawn from the inputs; an attached file was changed."
+	}
 	const most = 8
 	if more := len(changed) - most; more > 0 {
 		changed = append(changed[:most], countWord(float64(more), "more part"))
 	}
-	return false, "The file is not the one that is drawn from the record; changed: " + strings.Join(changed, "; ") + "."
+	return false, "The file is not the one that is drawn from the inputs in the record; changed: " + strings.Join(changed, "; ") + "."
 }
 
 // streamPart is a packed part of a PDF as this program writes it.
@@ -112,23 +116,50 @@ func cutStream(b []byte) (streamPart, bool) {
 	return streamPart{before: head, packed: rest[:n], flate: bytes.Contains(dict, []byte("/FlateDecode")), after: rest[n:]}, true
 }
 
-// unpack gives the content, up to one byte more than the limit.
+// sameContent compares two parts unpacked; the first is not unpacked further
+// than the second is long.
+func sameContent(given, drawn *streamPart) bool {
+	if bytes.Equal(given.packed, drawn.packed) {
+		return true
+	}
+	want, err := drawn.unpack(maxUnpacked)
+	if err != nil {
+		return false
+	}
+	got, err := given.unpack(len(want))
+	return err == nil && bytes.Equal(got, want)
+}
+
+// maxUnpacked bounds a part of our own making.
+const maxUnpacked = 64 << 20
+
+// unpack gives the content, up to one byte more than the limit. Anything behind
+// the end of the packing is an error.
 func (s *streamPart) unpack(limit int) ([]byte, error) {
 	if !s.flate {
 		return s.packed, nil
 	}
-	z, err := zlib.NewReader(bytes.NewReader(s.packed))
+	r := bytes.NewReader(s.packed)
+	z, err := zlib.NewReader(r)
 	if err != nil {
 		return nil, err
 	}
 	defer z.Close()
-	return io.ReadAll(io.LimitReader(z, int64(limit)+1))
+	b, err := io.ReadAll(io.LimitReader(z, int64(limit)+1))
+	if err == nil && len(b) <= limit && r.Len() > 0 {
+		err = errors.New("something stands behind its end")
+	}
+	return b, err
 }
 
 var (
 	crossReferences = regexp.MustCompile(`\nxref\n[0-9 \nfn]*trailer\n`)
 	startReference  = regexp.MustCompile(`startxref\n\d+\n`)
+	sumsOfFile      = regexp.MustCompile(`/Params << /CheckSum <[0-9a-f]*> /Size \d+ >>`)
 )
+
+// withoutSums drops the check sum and the size of an attached file.
+func withoutSums(b []byte) []byte { return sumsOfFile.ReplaceAll(b, nil) }
 
 // withoutLengths drops the numbers that follow from how well the parts are
 // packed: their lengths, and the places of the objects behind them.

@@ -104,7 +104,6 @@ const (
 	ExponentBand  Slug = "exponent-outside-band"
 	WideInterval  Slug = "wide-interval"
 	HighLeverage  Slug = "high-leverage"
-	LineAlone     Slug = "range-of-the-line-alone"
 )
 
 // FitTarget is the animal that a line is asked about.

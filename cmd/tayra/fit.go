@@ -22,18 +22,22 @@ func fitCommand() *cobra.Command {
 		Long: `Fit ln Y = ln a + b·ln W to a table of species, body masses and one quantity or
 more (clearance, volume, half_life, dose), and read the line at a target animal:
 its slope with standard error, confidence and prediction intervals, how each
-animal is predicted by the others, and the cautions. Units stand in the cells
-("12 mL/min") or in the heading ("clearance (mL/min)"); a quantity per kg and one
-per animal are told apart by their unit. With --case the target and the known
-regimen come from a case file, and the fitted clearance gives a dose: the
-worksheet is that of "tayra draft", and exit status 1 means that a stop left
-none.`,
+animal is predicted by the others, and the cautions. The table is CSV in UTF-8
+with comma, semicolon or tab; - reads it from standard input. Units stand in the
+cells ("12 mL/min") or in the heading ("clearance (mL/min)"); a quantity per kg
+and one per animal are told apart by their unit. Decimal commas are read in
+tables with semicolons only.
+
+With --case the target and the known regimen come from a case file, and the
+fitted clearance gives a dose: the worksheet is that of "tayra draft", and exit
+status 1 means that a stop left none.`,
 		Example: `tayra fit clearances.csv --target "giant anteater" --mass "41 kg"
-tayra fit clearances.csv --target emu --mass 40kg --plot line.svg --json line.json
-tayra fit clearances.csv --case anteater.yaml --pdf worksheet.pdf`,
-		Annotations: map[string]string{"usage": "tayra fit DATA.csv --target SPECIES --mass MASS [flags]\ntayra fit DATA.csv --case CASE.yaml [flags]"},
-		Args:        arguments("DATA.csv"),
-		RunE:        f.run,
+tayra fit clearances.csv --target emu --mass 40kg --plot line.svg
+tayra fit clearances.csv --case case.yaml --pdf worksheet.pdf`,
+		Annotations:       map[string]string{"usage": "tayra fit DATA.csv --target SPECIES --mass MASS [flags]\ntayra fit DATA.csv --case CASE.yaml [flags]"},
+		Args:              arguments("DATA.csv"),
+		ValidArgsFunction: completeFirst(completeFiles("csv", "tsv", "txt")),
+		RunE:              f.run,
 	}
 	inGroup(cmd, "The target", func(flags *pflag.FlagSet) {
 		flags.Var(&entryFlag{&f.target, "SPECIES"}, "target", "the animal that the line is asked about")

@@ -56,6 +56,11 @@ func TestExamplesRun(t *testing.T) {
 	if proposing == template {
 		t.Fatal("the template has no sleeping proposal")
 	}
+	table, err := os.ReadFile("../../testdata/clearances.csv")
+	if err != nil {
+		t.Fatal(err)
+	}
+	clearances := string(table)
 	for _, c := range everyCommand() {
 		t.Run(c.Name(), func(t *testing.T) {
 			folder := t.TempDir()
@@ -65,6 +70,7 @@ func TestExamplesRun(t *testing.T) {
 			}
 			write(t, folder, "check.yaml", proposing)
 			write(t, folder, "animals.csv", animalsTable)
+			write(t, folder, "clearances.csv", clearances)
 			if c.Annotations[runsOn] != "" {
 				for line := range strings.SplitSeq(c.Example, "\n") {
 					interrupt(t, folder, line)

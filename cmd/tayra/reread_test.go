@@ -13,6 +13,9 @@ import (
 
 	"github.com/pdfcpu/pdfcpu/pkg/api"
 	"github.com/pdfcpu/pdfcpu/pkg/pdfcpu/model"
+
+	"tayra/dose"
+	"tayra/reports"
 )
 
 // worksheetFile drafts the example case into a folder of its own.
@@ -74,13 +77,13 @@ func rereadRun(args ...string) (status int, stdout, stderr string) {
 
 // One digit of the record, changed with another program, is found, and where.
 func TestRereadOneDigit(t *testing.T) {
-	dose := regexp.MustCompile(`("drafted": \{[^}]*?"dose_per_kg": \[\s*)(\d)`)
+	drafted := regexp.MustCompile(`("drafted": \{[^}]*?"dose_per_kg": \[\s*)(\d)`)
 	changed := withRecord(t, worksheetFile(t), func(b []byte) []byte {
-		m := dose.FindSubmatch(b)
+		m := drafted.FindSubmatch(b)
 		if m == nil {
 			t.Fatal("no drafted dose in the record")
 		}
-		return dose.ReplaceAll(b, fmt.Appendf(nil, "${1}%c", '0'+(m[2][0]-'0'+1)%10))
+		return drafted.ReplaceAll(b, fmt.Appendf(nil, "${1}%c", '0'+(m[2][0]-'0'+1)%10))
 	})
 	status, out, errs := rereadRun(changed)
 	if status != exitFinding || errs != "" {
@@ -115,15 +118,34 @@ func TestRereadOneDigit(t *testing.T) {
 	}
 }
 
-// Only the version differs: said, and no finding. The other program that saved
-// the file here leaves the keywords, so the digest that is stated is not that of
-// the changed record: a real worksheet of another version states its own.
-func TestRereadOtherVersionIsFound(t *testing.T) {
+// A worksheet of another version, which states the digest of its own record,
+// differs in nothing else: that is said, and is no finding.
+func TestRereadOtherVersion(t *testing.T) {
+	var record []byte
 	changed := withRecord(t, worksheetFile(t), func(b []byte) []byte {
-		return regexp.MustCompile(`"version": "[^"]*"`).ReplaceAll(b, []byte(`"version": "0.0.1"`))
+		record = regexp.MustCompile(`"version": "[^"]*"`).ReplaceAll(b, []byte(`"version": "0.0.1"`))
+		return record
 	})
-	status, out, _ := rereadRun(changed)
-	if status != exitFinding || !strings.Contains(out, "0.0.1") {
+	conf := model.NewDefaultConfiguration()
+	bare, stated := filepath.Join(t.TempDir(), "bare.pdf"), filepath.Join(t.TempDir(), "old.pdf")
+	if err := api.RemoveKeywordsFile(changed, bare, nil, conf); err != nil {
+		t.Fatal(err)
+	}
+	if err := api.AddKeywordsFile(bare, stated, []string{"record " + reports.Digest(record)}, conf); err != nil {
+		t.Fatal(err)
+	}
+	status, out, errs := rereadRun(stated)
+	if status != exitDone || errs != "" {
+		t.Errorf("exit status %d: %s", status, errs)
+	}
+	out = strings.Join(strings.Fields(out), " ")
+	for _, want := range []string{"old.pdf: same results, another version (", "0.0.1 then, " + dose.Version + " now. The results are the same.", "The pages were not compared"} {
+		if !strings.Contains(out, want) {
+			t.Errorf("%q is not in %s", want, out)
+		}
+	}
+	// Without the digest of its own, the record counts as changed.
+	if status, out, _ := rereadRun(changed); status != exitFinding || !strings.Contains(out, "0.0.1") {
 		t.Errorf("exit status %d\n%s", status, out)
 	}
 }

@@ -91,11 +91,20 @@ func TestTheDraftInItsOrder(t *testing.T) {
 		t.Fatalf("%+v", a)
 	}
 	text := seen(a.Top + " " + a.Rest)
+	record := commandRecord(t, "check.yaml", example(t, "check.yaml"))
+	var ws dose.Worksheet
+	if err := json.Unmarshal(record, &ws); err != nil {
+		t.Fatal(err)
+	}
+	// The words are the reports' own; their place and the numbers are the page's.
+	perKg, amount := wording[func(dose.DoseRange, string) string]("perKgRange"), wording[func(dose.DoseRange, string) string]("amountRange")
+	even := "as likely as not " + perKg(ws.Drafted.Range50, "mg/kg") + " " + amount(ws.Drafted.Range50Amount, "mg/kg")
+	ninety := "nine times in ten " + perKg(ws.Drafted.Range90, "mg/kg") + " " + amount(ws.Drafted.Range90Amount, "mg/kg")
 	at := 0
 	for _, s := range []string{
 		"case LW-0413, 2026-11-30, prepared by duty veterinarian", "Marisol, giant anteater", "41 kg", "dehydrated",
 		"The draft", "examplicillin 334 mg SC every 12 hours (q12h)", "= 6.7 mL of 50 mg/mL (335 mg)",
-		"as likely as not 3.51 to 18.9 mg/kg 144 to 775 mg", "nine times in ten 1.04 to 63.6 mg/kg 42.7 mg to 2.61 g",
+		even, ninety,
 		"This is not a range to choose from.", "Worst caution: WARN.",
 		"Cautions: ", "WARN Dehydrated:", "[condition]", "[basis-disagrees]",
 		"Proposed regimen: differs from the draft", "1.47 times the drafted",
@@ -113,7 +122,6 @@ func TestTheDraftInItsOrder(t *testing.T) {
 		}
 		at += i + len(s)
 	}
-	record := commandRecord(t, "check.yaml", example(t, "check.yaml"))
 	if !strings.Contains(text, "record "+reports.Digest(record)) {
 		t.Error("the digest is not the record's")
 	}

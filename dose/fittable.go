@@ -100,7 +100,7 @@ const (
 // or tabs (found in the heading), UTF-8 with or without a byte-order mark. The
 // columns are species, mass, one or more of clearance, volume, half_life and
 // dose, and optionally source; a unit stands in the cells or, in brackets, in
-// the heading: "mass (kg)". Other columns are left alone. A decimal comma is
+// the heading: "mass (kg)" or "mass [kg]". Other columns are left alone. A decimal comma is
 // read in semicolon tables only. The error is an [InputErrors] with file, line
 // and column.
 func ReadFitTable(file string, data []byte) (*FitInput, error) {
@@ -117,7 +117,13 @@ func ReadFitTable(file string, data []byte) (*FitInput, error) {
 	if bytes.IndexByte(data, 0) >= 0 {
 		return nil, InputErrors{fault(0, 0, "", "holds a NUL byte", "save the table as CSV, not as a workbook")}
 	}
-	comma := delimiter(data)
+	comma, named := namedSeparator(data)
+	if named {
+		// An empty line in its place keeps the numbers of the others.
+		data = data[bytes.IndexByte(data, '\n'):]
+	} else {
+		comma = delimiter(data)
+	}
 	r := csv.NewReader(bytes.NewReader(data))
 	r.Comma, r.FieldsPerRecord = comma, -1
 	head, err := r.Read()
@@ -127,7 +133,7 @@ func ReadFitTable(file string, data []byte) (*FitInput, error) {
 		}
 		return nil, InputErrors{csvFault(file, err)}
 	}
-	cols, units, errs := fitHeading(file, head)
+	cols, units, errs := fitHeading(file, head, r.FieldPos)
 	if len(errs) > 0 {
 		return nil, errs
 	}
@@ -145,7 +151,8 @@ func ReadFitTable(file string, data []byte) (*FitInput, error) {
 		}
 		line, _ := r.FieldPos(0)
 		if len(rec) != len(head) {
-			errs = append(errs, fault(line, 0, "", fmt.Sprintf("%d cells, where the heading has %d", len(rec), len(head)), "give every row the columns of the heading; quote a cell that holds the separator"))
+			_, column := r.FieldPos(min(len(rec)-1, len(head)))
+			errs = append(errs, fault(line, column, "", fmt.Sprintf("%d cells, where the heading has %d", len(rec), len(head)), "give every row the columns of the heading; quote a cell that holds the separator"))
 			continue
 		}
 		if len(in.Rows) == maxFitRows {
@@ -157,19 +164,28 @@ func ReadFitTable(file string, data []byte) (*FitInput, error) {
 			if e == nil {
 				continue
 			}
+			l, c := r.FieldPos(i)
 			text := strings.TrimSpace(rec[i])
-			if text == "" && cols[i] != "species" && cols[i] != "mass" {
-				continue // a parameter that was not measured here
-			}
-			if units[i] != "" {
+			if cols[i] != "species" && cols[i] != "source" && text != "" {
+				if text[0] > '9' { // "n/a", "not given"
+					errs = append(errs, fault(l, c, cols[i], fmt.Sprintf("%q is no number", text), "leave the cell empty where nothing was measured"))
+					continue
+				}
 				if comma == ';' {
 					text = strings.Replace(text, ",", ".", 1)
 				}
-				text += " " + units[i]
-			} else if comma == ';' && cols[i] != "species" && cols[i] != "source" {
-				text = strings.Replace(text, ",", ".", 1)
+				switch unit := unitOf(text); {
+				case units[i] == "" || strings.EqualFold(unit, unitOf(units[i])):
+				case unit == "", unit[0] == ',': // a decimal comma is a fault of its own
+					text += " " + units[i]
+				default:
+					errs = append(errs, fault(l, c, cols[i], fmt.Sprintf("%q, where the heading says %q", text, units[i]), "write the unit in one of the two"))
+					continue
+				}
 			}
-			l, c := r.FieldPos(i)
+			if text == "" && cols[i] != "species" && cols[i] != "mass" {
+				continue // was not measured here
+			}
 			*e = Entry{Text: text, Line: l, Column: c}
 		}
 		in.Rows = append(in.Rows, row)
@@ -188,6 +204,16 @@ func ReadFitTable(file string, data []byte) (*FitInput, error) {
 		return nil, InputErrors{fault(1, 0, "", "no row with a value", "fill in clearance, volume, half_life or dose")}
 	}
 	return in, nil
+}
+
+// namedSeparator reads the line "sep=;" with which some tables begin.
+func namedSeparator(data []byte) (rune, bool) {
+	line, _, more := bytes.Cut(data, []byte("\n"))
+	line = bytes.TrimRight(line, "\r")
+	if !more || len(line) != len("sep=;") || !bytes.EqualFold(line[:4], []byte("sep=")) || !bytes.ContainsAny(line[4:], ",;\t") {
+		return 0, false
+	}
+	return rune(line[4]), true
 }
 
 func blank(rec []string) bool {
@@ -219,18 +245,24 @@ func csvFault(file string, err error) *InputError {
 		return &InputError{File: file, Problem: err.Error(), Remedy: "save the table as CSV UTF-8"}
 	}
 	e := &InputError{File: file, Line: p.Line, Column: p.Column, Problem: "a quotation mark out of place", Remedy: `put the whole cell in quotation marks and double those inside: "say ""one"""`}
+	if p.StartLine < p.Line { // found where the table ends
+		e.Line, e.Column, e.Problem = p.StartLine, 0, "a cell that begins with a quotation mark in this row does not end"
+	}
 	return e
 }
 
-// fitHeading says which column is which, and the unit in its heading.
-func fitHeading(file string, head []string) (cols, units []string, errs InputErrors) {
+// fitHeading says which column is which, and the unit in its heading. place gives
+// line and column of a cell.
+func fitHeading(file string, head []string, place func(int) (int, int)) (cols, units []string, errs InputErrors) {
+	line, _ := place(0)
 	cols, units = make([]string, len(head)), make([]string, len(head))
 	seen := map[string]int{}
 	for i, h := range head {
-		name, unit := h, ""
-		if a := strings.IndexByte(h, '('); a >= 0 && strings.HasSuffix(strings.TrimSpace(h), ")") {
-			name = h[:a]
-			unit = strings.TrimSuffix(strings.TrimSpace(h[a+1:]), ")")
+		name, unit := strings.TrimSpace(h), ""
+		for _, brackets := range []string{"()", "[]"} {
+			if a := strings.IndexByte(name, brackets[0]); a >= 0 && strings.HasSuffix(name, brackets[1:]) {
+				name, unit = name[:a], strings.TrimSpace(name[a+1:len(name)-1])
+			}
 		}
 		name = strings.ReplaceAll(strings.ReplaceAll(strings.ToLower(strings.TrimSpace(name)), " ", "_"), "-", "_")
 		switch name {
@@ -249,13 +281,14 @@ func fitHeading(file string, head []string) (cols, units []string, errs InputErr
 			continue
 		}
 		if at, ok := seen[name]; ok {
-			errs = append(errs, &InputError{File: file, Line: 1, Field: name, Problem: fmt.Sprintf("two columns of this name, %d and %d", at+1, i+1), Remedy: "rename or remove one"})
+			_, column := place(i)
+			errs = append(errs, &InputError{File: file, Line: line, Column: column, Field: name, Problem: fmt.Sprintf("two columns of this name, %d and %d", at+1, i+1), Remedy: "rename or remove one"})
 		}
 		seen[name] = i
 		cols[i], units[i] = name, unit
 	}
 	missing := func(name, remedy string) {
-		errs = append(errs, &InputError{File: file, Line: 1, Field: name, Problem: "no column of this name in the heading", Remedy: remedy})
+		errs = append(errs, &InputError{File: file, Line: line, Field: name, Problem: "no column of this name in the heading", Remedy: remedy})
 	}
 	if _, ok := seen["species"]; !ok {
 		missing("species", "write a heading such as: species,mass (kg),clearance (mL/min)")
@@ -319,7 +352,7 @@ func (in *FitInput) check() ([]fitRow, error) {
 			}{unit, e.Line}
 			return
 		}
-		if f.unit != unit {
+		if !strings.EqualFold(f.unit, unit) { // "ml" is "mL"
 			problem := fmt.Sprintf("in %s, where row %d has %s", unit, f.line, f.unit)
 			if strings.HasSuffix(f.unit, "/kg") != strings.HasSuffix(unit, "/kg") {
 				problem += ": per kg beside per animal"

@@ -24,7 +24,7 @@ func samePages(given, drawn []byte, producerThen string) (ok bool, text string) 
 	if bytes.HasPrefix(given, drawn) {
 		return false, fmt.Sprintf("Something was added behind the worksheet as it was written, %s (a note, a signature, a change of a page); underneath it is the same, byte for byte.", countWord(float64(len(given)-len(drawn)), "byte"))
 	}
-	page := 0
+	page, otherForm := 0, false
 	var changed []string
 	note := func(part string) {
 		if !slices.Contains(changed, part) {
@@ -35,7 +35,7 @@ func samePages(given, drawn []byte, producerThen string) (ok bool, text string) 
 		g, okGiven := cutStream(given)
 		d, okDrawn := cutStream(drawn)
 		if okGiven != okDrawn {
-			note("the number of its parts")
+			otherForm = true
 			break
 		}
 		content := ""
@@ -64,11 +64,14 @@ func samePages(given, drawn []byte, producerThen string) (ok bool, text string) 
 		}
 		given, drawn = g.after, d.after
 	}
-	if len(changed) == 0 {
+	if len(changed) == 0 && !otherForm {
 		return true, "The pages were drawn again: the same once unpacked; only the compressor of another build differs."
 	}
-	if now := producer(); producerThen != "" && producerThen != now {
+	switch now := producer(); {
+	case producerThen != "" && producerThen != now:
 		return false, "The file was saved again by another program (" + clip(producerThen) + "), so its pages cannot be held against those drawn from the record."
+	case otherForm:
+		return false, "The file is not put together as this program does it: another program saved it again, so its pages cannot be held against those drawn from the record."
 	}
 	if len(changed) == 1 && changed[0] == attachedPart {
 		return false, "The pages are those that are drawn from the inputs; an attached file was changed."

@@ -368,6 +368,41 @@ func TestMatchHazardsRelation(t *testing.T) {
 	}
 }
 
+// What an animal's own list holds is what a draft of each drug would raise.
+func TestHazardsOf(t *testing.T) {
+	for _, name := range []string{"cat", "tiger", "griffon vulture", "alpaca", "giant anteater", "Greek tortoise", "dog", "chicken"} {
+		a := found(t, name)
+		list := HazardsOf(a)
+		ids := make(map[string]string)
+		for _, m := range list {
+			ids[m.ID] = m.Relation
+			drug, class := m.Drug, ""
+			if drug == "" {
+				class = m.DrugClass
+			}
+			if got, ok := matchOf(MatchHazards(drug, class, a, ""), m.ID); !ok || got.Relation != m.Relation || got.RelativeRank != m.RelativeRank || got.Condition != m.Condition {
+				t.Errorf("%s: the list has %s %s %s, a draft %+v", name, m.ID, m.Relation, m.RelativeRank, got)
+			}
+		}
+		if !slices.IsSortedFunc(list, compareMatches) {
+			t.Errorf("%s: out of order", name)
+		}
+		for _, h := range Hazards() {
+			drug, class := h.Drug, ""
+			if drug == "" {
+				class = h.DrugClass
+			}
+			m, ok := matchOf(MatchHazards(drug, class, a, ""), h.ID)
+			if ok && !m.Operator && m.RelativeRank != "drug class" && m.RelativeRank != "food animal" && ids[h.ID] == "" {
+				t.Errorf("%s: %s is not in the list", name, h.ID)
+			}
+		}
+	}
+	if m, ok := matchOf(HazardsOf(found(t, "alpaca")), "h067"); !ok || m.Relation != "relative" || m.RelativeRank != "order" {
+		t.Errorf("alpaca: %+v", m)
+	}
+}
+
 // The worst stands first.
 func TestMatchHazardsOrder(t *testing.T) {
 	got := MatchHazards("ketoprofen + fenbendazole + gentamicin", "", found(t, "griffon vulture"), "IM")

@@ -1,6 +1,7 @@
 package species
 
 import (
+	"cmp"
 	"slices"
 	"strings"
 	"sync"
@@ -80,16 +81,37 @@ func MatchHazards(drug, class string, a *Animal, route string) []HazardMatch {
 		}
 	}
 	out = dropSisters(out)
-	slices.SortStableFunc(out, func(x, y HazardMatch) int {
-		if c := severityRank(x.Severity) - severityRank(y.Severity); c != 0 {
-			return c
-		}
-		if x.Relation != y.Relation {
-			return strings.Compare(x.Relation, y.Relation) // "direct" before "relative"
-		}
-		return strings.Compare(x.ID, y.ID)
-	})
+	slices.SortStableFunc(out, compareMatches)
 	return out
+}
+
+// HazardsOf returns the rows of the hazard table that concern an animal,
+// whatever the drug, in the order of [MatchHazards]: its own as "direct", those
+// of its relatives as "relative". Rows about the person who handles the drug and
+// rows of law in other animals are left out, since they concern every animal.
+func HazardsOf(a *Animal) []HazardMatch {
+	var out []HazardMatch
+	for i := range hazards().rows {
+		h := &hazards().rows[i]
+		m := HazardMatch{Hazard: *h}
+		m.Relation, m.RelativeRank = relationOf(h, a)
+		if m.Relation == "" || h.Operator || m.RelativeRank == "food animal" {
+			continue
+		}
+		if m.Relation == "relative" {
+			m.Condition, m.ConditionKind = "", ""
+		}
+		out = append(out, m)
+	}
+	slices.SortStableFunc(out, compareMatches)
+	return out
+}
+
+// compareMatches puts the worst first, the animal's own before its relatives'.
+func compareMatches(x, y HazardMatch) int {
+	return cmp.Or(severityRank(x.Severity)-severityRank(y.Severity),
+		strings.Compare(x.Relation, y.Relation), // "direct" before "relative"
+		strings.Compare(x.ID, y.ID))
 }
 
 // dropSisters lets off what is known of other drugs of a class where the table

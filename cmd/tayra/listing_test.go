@@ -3,7 +3,6 @@ package main
 import (
 	"bytes"
 	"encoding/json"
-	"slices"
 	"strings"
 	"testing"
 	"unicode/utf8"
@@ -108,37 +107,40 @@ func TestListingRecords(t *testing.T) {
 	hasKeys(t, "an equation", lines[0].(map[string]any), "id", "a", "b", "mass_unit", "rate_unit", "form", "level", "source", "verified", "usable")
 }
 
-// TestHazardsOf: each rank of the table reaches the animals of it, the wild
-// form is one with the domestic one, and others are left alone.
-func TestHazardsOf(t *testing.T) {
-	ids := func(name string) []string {
+// TestListedHazards: each rank of the table reaches the animals of it, the wild
+// form is one with the domestic one, and what is known of relatives is told
+// apart.
+func TestListedHazards(t *testing.T) {
+	text := func(name string) (own, relatives string) {
 		a, err := species.Find(name)
 		if err != nil {
 			t.Fatal(err)
 		}
-		var out []string
-		for _, h := range hazardsOf(a) {
-			out = append(out, h.ID)
-		}
-		return out
+		own, relatives, _ = strings.Cut(animalText(a), "Known in relatives")
+		return own, relatives
 	}
 	rank := map[string]string{}
 	for _, h := range species.Hazards() {
 		rank[h.ID] = h.Rank + " " + h.Taxon
 	}
 	for _, c := range []struct {
-		animal, row string
-		want        bool
+		animal, row    string
+		own, relatives bool
 	}{
-		{"dog", "h032", true},  // species Canis lupus familiaris
-		{"wolf", "h032", true}, // one species with the dog
-		{"cat", "h032", false},
-		{"Hermann's tortoise", "h001", true}, // order Testudines
-		{"green iguana", "h001", false},
-		{"giant anteater", "h090", true}, // any animal
+		{animal: "dog", row: "h032", own: true},                  // species Canis lupus familiaris
+		{animal: "wolf", row: "h032", own: true},                 // one species with the dog
+		{animal: "cat", row: "h032"},                             // a breed's gene
+		{animal: "Hermann's tortoise", row: "h001", own: true},   // order Testudines
+		{animal: "Greek tortoise", row: "h002", relatives: true}, // of one family
+		{animal: "green iguana", row: "h001"},
+		{animal: "giant anteater", row: "h090", own: true}, // any animal
+		{animal: "alpaca", row: "h067", relatives: true},   // of one order
+		{animal: "cat", row: "h082"},                       // the handler's, not the cat's
 	} {
-		if got := slices.Contains(ids(c.animal), c.row); got != c.want {
-			t.Errorf("%s and %s (%s): %v, want %v", c.animal, c.row, rank[c.row], got, c.want)
+		own, relatives := text(c.animal)
+		row := "[" + c.row + "]"
+		if strings.Contains(own, row) != c.own || strings.Contains(relatives, row) != c.relatives {
+			t.Errorf("%s and %s (%s): own %v, of relatives %v", c.animal, c.row, rank[c.row], strings.Contains(own, row), strings.Contains(relatives, row))
 		}
 	}
 }

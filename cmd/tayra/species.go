@@ -3,7 +3,6 @@ package main
 import (
 	"errors"
 	"fmt"
-	"sort"
 	"strings"
 
 	"github.com/spf13/cobra"
@@ -166,15 +165,25 @@ func animalText(a *species.Animal) string {
 	fact("measured rate", measuredText(a))
 	fact("notes", a.Notes)
 
-	matches := hazardsOf(a)
+	var matches, relatives []species.HazardMatch
+	for _, m := range species.HazardsOf(a) {
+		if m.Relation == "direct" {
+			matches = append(matches, m)
+		} else {
+			relatives = append(relatives, m)
+		}
+	}
 	fmt.Fprintf(&b, "\n%s\n", paragraph(hazardCountText(a, len(matches)), 0, 0, listWidth))
 	for _, h := range matches {
-		fmt.Fprintf(&b, "\n%s\n", paragraph(hazardHead(&h), 2, 4, listWidth))
+		fmt.Fprintf(&b, "\n%s\n", paragraph(hazardHead(&h.Hazard), 2, 4, listWidth))
 		fmt.Fprintln(&b, paragraph(h.WhatHappens, 4, 4, listWidth))
 		if q := h.Question(); q != "" {
 			fmt.Fprintln(&b, paragraph(q, 4, 4, listWidth))
 		}
 		fmt.Fprintln(&b, paragraph("Source: "+h.Citation+" ("+h.Verified+")", 4, 4, listWidth))
+	}
+	if text := relativesText(relatives); text != "" {
+		fmt.Fprintf(&b, "\n%s\n", paragraph(text, 2, 2, listWidth))
 	}
 	return b.String()
 }
@@ -245,33 +254,21 @@ func measuredText(a *species.Animal) string {
 	return text + ". " + sourceText(m.Source)
 }
 
-// hazardsOf are the rows of the hazard table that speak of the animal itself,
-// whatever the drug, worst first.
-func hazardsOf(a *species.Animal) []species.Hazard {
-	var out []species.Hazard
-	for _, h := range species.Hazards() {
-		concerned := false
-		switch h.Rank {
-		case "any":
-			concerned = true
-		case "species":
-			concerned = species.SameSpecies(a, &species.Animal{Name: h.Taxon})
-		case "genus":
-			concerned = a.Genus() == h.Taxon
-		case "family":
-			concerned = a.Family == h.Taxon
-		case "order":
-			concerned = a.Order == h.Taxon
-		case "class":
-			concerned = a.Class == h.Taxon
+// relativesText names what is known in relatives of the animal, of which a
+// draft warns as well.
+func relativesText(matches []species.HazardMatch) string {
+	var of []string
+	for _, m := range matches {
+		drug := m.Drug
+		if drug == "" {
+			drug = m.DrugClass
 		}
-		if concerned {
-			out = append(out, h)
-		}
+		of = append(of, drug+" in "+m.Taxon+" ["+m.ID+"]")
 	}
-	severity := map[string]int{"contraindicated": 0, "reduced margin": 1, "caution": 2}
-	sort.SliceStable(out, func(i, j int) bool { return severity[out[i].Severity] < severity[out[j].Severity] })
-	return out
+	if len(of) == 0 {
+		return ""
+	}
+	return "Known in relatives, of the same family or order: " + strings.Join(of, ", ") + ". A draft tells of these too."
 }
 
 func hazardCountText(a *species.Animal, n int) string {
@@ -359,6 +356,7 @@ type measuredJSON struct {
 
 type hazardRecord struct {
 	ID       string `json:"id"`
+	Relation string `json:"relation"` // "direct", or "relative": known in one of the same family or order
 	Severity string `json:"severity"`
 	Drug     string `json:"drug,omitempty"`
 	Class    string `json:"drug_class"`
@@ -413,8 +411,8 @@ func speciesRecord(animals []*species.Animal, single bool) any {
 
 func hazardRecords(a *species.Animal) []hazardRecord {
 	out := []hazardRecord{}
-	for _, h := range hazardsOf(a) {
-		out = append(out, hazardRecord{ID: h.ID, Severity: h.Severity, Drug: h.Drug, Class: h.DrugClass, Route: h.Route,
+	for _, h := range species.HazardsOf(a) {
+		out = append(out, hazardRecord{ID: h.ID, Relation: h.Relation, Severity: h.Severity, Drug: h.Drug, Class: h.DrugClass, Route: h.Route,
 			Taxon: h.Taxon, Text: h.WhatHappens, Source: h.Citation, Verified: h.Verified})
 	}
 	return out

@@ -74,8 +74,8 @@ func reason(err error) string {
 type beyondMeasured struct{ measured, mass metabolic.Mass }
 
 func (e *beyondMeasured) Error() string {
-	return fmt.Sprintf("%s: measured at %s; a mass of %s is outside a quarter to four times that",
-		BasisMeasured, metabolic.FormatMass(e.measured), metabolic.FormatMass(e.mass))
+	return fmt.Sprintf("measured at %s; a mass of %s is outside a quarter to four times that",
+		metabolic.FormatMass(e.measured), metabolic.FormatMass(e.mass))
 }
 
 // kindsDiffer says that the published lines of two animals are not of one kind.

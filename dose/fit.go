@@ -269,7 +269,7 @@ func (f *FitRecord) caution(target FitTarget) {
 		}
 	}
 	for _, q := range f.Points {
-		if a, err := species.Find(q.Species); err == nil {
+		if a, ok := species.Known(q.Species); ok {
 			cannotBe(a, metabolic.Mass(q.MassKg), "The mass of the row "+q.Species)
 		}
 	}

@@ -23,20 +23,8 @@ import (
 //
 // The animal is the caller's own.
 func Find(words string) (*Animal, error) {
-	folded, err := fold.Words(words)
-	if err != nil {
-		return nil, &NameError{Words: words, Problem: err.Error()}
-	}
-	if folded == "" {
-		return nil, &NameError{Words: words, Problem: "no name of an animal"}
-	}
-	if a, err := named(words, folded); a != nil || err != nil {
-		return a, err
-	}
-	if a, err := bracketed(words); a != nil || err != nil {
-		return a, err
-	}
-	if a, err := subspecies(folded); a != nil || err != nil {
+	folded, a, err := find(words)
+	if a != nil || err != nil {
 		return a, err
 	}
 	for _, open := range []string{" sp", " spp"} {
@@ -46,6 +34,32 @@ func Find(words string) (*Animal, error) {
 		return nil, &AmbiguousError{Words: words, Names: several}
 	}
 	return nil, &NotFoundError{Words: words, Near: near(folded)}
+}
+
+// Known is [Find] for a name that may well be none: it does not look for the
+// nearest names, which takes a thousand times as long. ok is false where Find
+// gives an error.
+func Known(words string) (a *Animal, ok bool) {
+	_, a, err := find(words)
+	return a, a != nil && err == nil
+}
+
+// find looks for exactly what the words say; both results nil is "no such name".
+func find(words string) (folded string, a *Animal, err error) {
+	folded, err = fold.Words(words)
+	if err != nil {
+		return "", nil, &NameError{Words: words, Problem: err.Error()}
+	}
+	if folded == "" {
+		return "", nil, &NameError{Words: words, Problem: "no name of an animal"}
+	}
+	if a, err = named(words, folded); a == nil && err == nil {
+		a, err = bracketed(words)
+	}
+	if a == nil && err == nil {
+		a, err = subspecies(folded)
+	}
+	return folded, a, err
 }
 
 // named looks the whole name up; both results nil is "no such name".

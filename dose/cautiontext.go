@@ -280,7 +280,7 @@ func (n *numbers) hazardText(c *Case, r *raised, out *Caution) {
 	case h.RelativeRank == "food animal":
 		fmt.Fprintf(&b, "Law on food animals, on file for %s (%s): ", taxonWords(h.Taxon), drug)
 	case h.RelativeRank == "drug class":
-		fmt.Fprintf(&b, "Known in %s for a drug of the same class (%s): ", taxonWords(h.Taxon), drug)
+		fmt.Fprintf(&b, "Known in %s for a drug of the same class (%s): ", taxonWords(h.Taxon), h.Sister)
 	case h.Relation == "relative":
 		fmt.Fprintf(&b, "Known in a relative (%s, of the same %s), %s: ", h.Taxon, h.RelativeRank, named)
 	default:

@@ -54,15 +54,21 @@ func (h *Hazard) Question() string {
 // hazardBook is the table with its lookups.
 type hazardBook struct {
 	rows    []Hazard
-	byDrug  map[string][]int // canonical drug: rows about it
-	byClass map[string][]int // class: rows about the whole class
-	ofClass map[string][]int // class: rows about one drug of it
+	byDrug  map[string][]int    // canonical drug: rows about it
+	byClass map[string][]int    // class: rows about the whole class
+	ofClass map[string][]sister // class: rows about one drug of it
+}
+
+// sister is a row that speaks of a drug, to which another of its class leads.
+type sister struct {
+	row  int
+	drug string
 }
 
 var hazards = sync.OnceValue(readHazards)
 
 func readHazards() *hazardBook {
-	b := &hazardBook{byDrug: make(map[string][]int), byClass: make(map[string][]int), ofClass: make(map[string][]int)}
+	b := &hazardBook{byDrug: make(map[string][]int), byClass: make(map[string][]int), ofClass: make(map[string][]sister)}
 	for c := range records(hazardsTable) {
 		h := Hazard{
 			ID: c[0], Drug: c[1], DrugClass: c[2], AlsoDrugs: cell(c[3]), AlsoClasses: cell(c[4]),
@@ -78,11 +84,16 @@ func readHazards() *hazardBook {
 		} else {
 			drug := canonicalDrug(h.Drug)
 			b.byDrug[drug] = append(b.byDrug[drug], i)
-			b.ofClass[h.DrugClass] = append(b.ofClass[h.DrugClass], i)
+			b.ofClass[h.DrugClass] = append(b.ofClass[h.DrugClass], sister{i, h.Drug})
 		}
 		for _, d := range h.AlsoDrugs {
 			d = canonicalDrug(d)
 			b.byDrug[d] = append(b.byDrug[d], i)
+			for _, class := range classesOf(d) {
+				if class != h.DrugClass && !slices.Contains(h.AlsoClasses, class) {
+					b.ofClass[class] = append(b.ofClass[class], sister{i, d})
+				}
+			}
 		}
 		for _, class := range h.AlsoClasses {
 			b.byClass[class] = append(b.byClass[class], i)
@@ -109,6 +120,18 @@ func canonicalDrug(name string) string {
 		return parseDrug(l).drugs[0]
 	}
 	return name
+}
+
+// classesOf are the classes of a drug of the lists.
+func classesOf(drug string) []string {
+	words, err := fold.Words(drug)
+	if err != nil {
+		return nil
+	}
+	if l, ok := line(drugsIndex, fold.Key(words)); ok {
+		return parseDrug(l).classes
+	}
+	return nil
 }
 
 // Hazards returns the whole table. The slice is the caller's own.

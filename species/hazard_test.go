@@ -209,6 +209,10 @@ func TestMatchHazardsNames(t *testing.T) {
 		{"cefsampl", "", "golden hamster", "SC", "h079", "class cephalosporin, by the beginning cef-"},
 		{"ivermectin1%", "", "Greek tortoise", "SC", "h001", "drug name"},
 		{"co-codamol", "", "cat", "PO", "h033", "drug name"},
+		{"amox/clav", "", "rabbit", "PO", "h071", "class penicillin"},
+		{"Pen-G", "", "rabbit", "PO", "h071", "class penicillin"},
+		{"genta", "", "ball python", "IM", "h003", "synonym genta"},
+		{"metro", "", "dog", "PO", "h051", "synonym metro"},
 		{"propacetamol", "", "cat", "IV", "h033", "propacetamol, which yields paracetamol"},
 		{"capecitabine", "", "cat", "PO", "h044", "capecitabine, which yields fluorouracil"},
 		{"febantel + praziquantel", "", "pigeon", "PO", "h019", "febantel, which yields fenbendazole"},
@@ -337,6 +341,9 @@ func TestMatchHazardsRelation(t *testing.T) {
 		{"tilmicosin", "dog", "h069", "direct", ""},
 		{"tylosin", "dog", "h069", "", ""},
 		{"tylosin", "chimpanzee", "h069", "relative", "drug class"},
+		{"azithromycin", "golden hamster", "h079", "relative", "drug class"}, // of the class of erythromycin, which the row names
+		{"valnemulin", "pig", "h088", "relative", "drug class"},              // of the class of tiamulin
+		{"azithromycin", "rabbit", "h079", "", ""},
 	} {
 		m, ok := matchOf(MatchHazards(tt.drug, "", found(t, tt.animal), ""), tt.id)
 		if ok != (tt.relation != "") || m.Relation != tt.relation || m.RelativeRank != tt.rank {

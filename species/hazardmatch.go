@@ -20,6 +20,7 @@ type HazardMatch struct {
 	// for another drug of the class, and nothing in the table about this one),
 	// or "food animal" (a law on residues: it concerns any animal that is eaten).
 	RelativeRank string
+	Sister       string // of a match by drug class: the drug that the row speaks of
 	// Via is "drug name", "synonym X", "X, which yields Y" (X is turned into Y,
 	// or is a form of it), "class X", "class X, by the ending -y" (or "by the
 	// beginning y-"), or "near spelling": then the name is not known and may be
@@ -67,10 +68,10 @@ func MatchHazards(drug, class string, a *Animal, route string) []HazardMatch {
 		m := HazardMatch{Hazard: *h, Via: c.via, Meant: c.meant}
 		m.Relation, m.RelativeRank = relationOf(h, a)
 		switch {
-		case c.sister && (m.Relation != "direct" || h.Regulatory || h.Operator):
+		case c.sister != "" && (m.Relation != "direct" || h.Regulatory || h.Operator):
 			continue
-		case c.sister:
-			m.Relation, m.RelativeRank = "relative", "drug class"
+		case c.sister != "":
+			m.Relation, m.RelativeRank, m.Sister = "relative", "drug class", c.sister
 		case h.operatorToo && m.Relation != "direct":
 			m.Relation, m.RelativeRank, m.Operator = "direct", "", true
 		case m.Relation == "relative" && !h.Regulatory:
@@ -180,7 +181,7 @@ type candidate struct {
 	how    certainty
 	via    string
 	meant  string
-	sister bool // the row is about another drug of the class
+	sister string // the row is about this other drug of the class
 }
 
 // What a drug and class lead to is kept: a batch asks for the same few drugs
@@ -228,27 +229,29 @@ func findCandidates(read []reading) []candidate {
 	}
 	b := hazards()
 	best := make(map[int]candidate)
-	put := func(rows []int, r reading, sister bool) {
-		for _, row := range rows {
-			old, ok := best[row]
-			if ok && (old.sister != sister && sister || old.sister == sister && old.how <= r.how) {
-				continue
-			}
-			best[row] = candidate{row, r.how, r.via, r.meant, sister}
+	put := func(row int, r reading, sister string) {
+		old, ok := best[row]
+		if ok && (old.sister == "" && sister != "" || (old.sister == "") == (sister == "") && old.how <= r.how) {
+			return
 		}
+		best[row] = candidate{row, r.how, r.via, r.meant, sister}
 	}
 	for _, r := range read {
-		if r.drug != "" {
-			put(b.byDrug[r.drug], r, false)
-		} else {
-			put(b.byClass[r.class], r, false)
+		rows := b.byDrug[r.drug]
+		if r.drug == "" {
+			rows = b.byClass[r.class]
+		}
+		for _, row := range rows {
+			put(row, r, "")
 		}
 	}
 	for _, r := range read {
 		// What is known of other drugs of a class is told for a class that is
 		// misspelt, but not for that of a drug which may have been meant.
 		if r.class != "" && (r.how != bySpelling || r.misspelt) {
-			put(b.ofClass[r.class], r, true)
+			for _, s := range b.ofClass[r.class] {
+				put(s.row, r, s.drug)
+			}
 		}
 	}
 	out := make([]candidate, 0, len(best))

@@ -15,17 +15,22 @@ import (
 type stripLine struct {
 	name      string
 	low, high float64
-	drafted   bool
+	used      bool // the draft follows from it
 }
 
 // stripLines are the doses of the drafted model under every basis and exponent.
 func stripLines(w *dose.Worksheet) []stripLine {
 	var out []stripLine
-	for _, b := range w.Bases {
-		if b.DosePerKg != nil {
-			name := "basis " + b.Basis
-			out = append(out, stripLine{name, b.DosePerKg[0], b.DosePerKg[1], b.Drafted && draftedByBasis(w)})
+	for i := range w.Bases {
+		b := &w.Bases[i]
+		if b.DosePerKg == nil {
+			continue
 		}
+		name := "basis " + basisLabel(b, false)
+		if basisUsed(w, b) {
+			name = "basis used, " + basisLabel(b, false)
+		}
+		out = append(out, stripLine{name, b.DosePerKg[0], b.DosePerKg[1], basisUsed(w, b)})
 	}
 	for _, e := range w.Exponents {
 		out = append(out, stripLine{"exponent " + metabolic.Significant(e.Exponent, 3), e.DosePerKg[0], e.DosePerKg[1], false})
@@ -33,43 +38,19 @@ func stripLines(w *dose.Worksheet) []stripLine {
 	return out
 }
 
-// draftedByBasis says whether the draft follows from a metabolic rate. A dose
-// from a line fitted to data does not, and is no row of the strip.
-func draftedByBasis(w *dose.Worksheet) bool {
-	return w.Drafted != nil && w.Drafted.Plan != string(dose.PlanFitted)
-}
-
 // stripHeight is how many points the strip needs on paper.
 func stripHeight(w *dose.Worksheet) float64 { return 50 + 13.5*float64(len(stripLines(w))+2) }
 
-// toModelInterval carries a dose of the draft to the model's interval, at which
-// the doses of the strip are given, by its daily amount: that is what the ranges
-// are about. It is 1 where the draft keeps the interval.
-func toModelInterval(w *dose.Worksheet) float64 {
-	from := &w.Drafts[w.DraftedFrom.Index]
-	if w.Drafted.IntervalH == nil || from.IntervalH == nil || *w.Drafted.IntervalH == *from.IntervalH {
-		return 1
-	}
-	return *from.IntervalH / *w.Drafted.IntervalH
-}
-
 // stripWords says what the strip shows.
 func stripWords(w *dose.Worksheet) string {
-	from := draftedModel(w)
-	switch {
-	case from.Kind == "once":
-		return "The dose by clearance, under every basis that both animals have and under other exponents, with both ranges."
-	case from.Kind == "infusion":
-		return "The rate per kg under every basis that both animals have and under other exponents, with both ranges of the draft."
-	case !draftedByBasis(w):
-		return "The dose per kg " + intervalWords(from.Kind, from.IntervalH) + " by scaling, under every basis that both animals have and under other exponents; broken line and bars: the dose from the fitted line, with its ranges."
-	case toModelInterval(w) != 1:
-		return "The dose per kg " + intervalWords(from.Kind, from.IntervalH) + ", the model's interval, under every basis that both animals have and under other exponents. The draft and its ranges are carried to that interval by the daily amount."
+	s := basesHold(w) + ", under every basis that both animals have and under other exponents"
+	if fittedDraft(w) {
+		return s + ". Broken line and bars: the dose from the fitted line, with its ranges."
 	}
-	return "The dose per kg " + intervalWords(from.Kind, from.IntervalH) + " under every basis that both animals have and under other exponents, with both ranges of the draft."
+	return s + ", with both ranges of the draft."
 }
 
-// stripPlot is the dose per kg at the model's interval under every basis and
+// stripPlot is the dose per kg under every basis and
 // exponent, on a log axis with both ranges of the draft: the eye sees in a
 // second whether they agree. Nil where there is no draft.
 func stripPlot(w *dose.Worksheet) *plot.Plot {
@@ -78,9 +59,8 @@ func stripPlot(w *dose.Worksheet) *plot.Plot {
 	if d == nil || len(lines) == 0 {
 		return nil
 	}
-	f := toModelInterval(w)
-	range90, range50 := dose.Pair{d.Range90.Low * f, d.Range90.High * f}, dose.Pair{d.Range50.Low * f, d.Range50.High * f}
-	drafted := dose.Pair{d.DosePerKg[0] * f, d.DosePerKg[1] * f}
+	range90, range50 := dose.Pair{d.Range90.Low, d.Range90.High}, dose.Pair{d.Range50.Low, d.Range50.High}
+	drafted := d.DosePerKg
 	low, high := math.Min(range90[0], drafted[0]), math.Max(range90[1], drafted[1])
 	for _, l := range lines {
 		low, high = math.Min(low, l.low), math.Max(high, l.high)
@@ -95,10 +75,7 @@ func stripPlot(w *dose.Worksheet) *plot.Plot {
 	}
 	for i, l := range lines {
 		text := l.name + ": " + perKgPair(dose.Pair{l.low, l.high}, d.Unit)
-		if l.drafted {
-			text = "drafted, " + text
-		}
-		labels = append(labels, sideLabel{row: rows - 2.5 - float64(i), text: text, bold: l.drafted})
+		labels = append(labels, sideLabel{row: rows - 2.5 - float64(i), text: text, bold: l.used})
 	}
 	sideLabels(p, rows, labels)
 	p.Add(drawing(func(c draw.Canvas, p *plot.Plot) {
@@ -120,7 +97,7 @@ func stripPlot(w *dose.Worksheet) *plot.Plot {
 				c.StrokeLine2(lineStyle(1.6, 0), tx(l.low), y, tx(l.high), y)
 			}
 			r := vg.Points(2.8)
-			if l.drafted {
+			if l.used {
 				r = vg.Points(4)
 			}
 			diamond(c, vg.Point{X: tx(l.low), Y: y}, r)

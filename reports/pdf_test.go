@@ -260,14 +260,17 @@ func TestPDFFirstPage(t *testing.T) {
 		var want []string
 		if d := e.ws.Drafted; d != nil {
 			want = append(want, orderWords(e.ws), giveWords(e.ws.Product, d.Unit), perKgPair(d.DosePerKg, d.Unit), perKgRange(d.Range50, d.Unit), perKgRange(d.Range90, d.Unit),
-				amountRange(d.Range90Amount, d.Unit), "Worst caution: "+levelWord(e.ws.Cautions[0].Level))
-			for _, at := range []*dose.Pair{d.AtLowMass, d.AtHighMass} {
-				if at != nil {
-					want = append(want, amountPair(*at, d.Unit))
-				}
+				amountRange(d.Range90Amount, d.Unit), "Worst caution: "+levelWord(e.ws.Cautions[0].Level), outrankedWords(e.ws), d.Disagreement)
+			for _, end := range massEnds(e.ws) {
+				want = append(want, capital(end))
 			}
+			order, about := loadingWords(e.ws)
+			want = append(want, order, about)
 			if m := e.ws.Drafts[e.ws.DraftedFrom.Index]; m.VolumeRange90 != nil {
-				want = append(want, perKgRange(*m.VolumeRange90, m.Unit), "Start at the low end.")
+				want = append(want, perKgRange(*m.VolumeRange90, m.Unit))
+				if startLow(e.ws) {
+					want = append(want, "Start at the low end.")
+				}
 			}
 		} else {
 			want = append(want, "STOP: no dose is drafted")

@@ -41,20 +41,12 @@ func (s *sheet) otherBases() {
 	rate := func(w float64) string { return metabolic.FormatPower(metabolic.Power(w)) }
 	for i := range ws.Bases {
 		b := &ws.Bases[i]
-		name, cell, per := b.Basis, plain, ""
-		if b.ID != "" {
-			name += " (" + b.ID + ")"
-		}
+		name, cell, per := basisLabel(b, true), plain, ""
 		if b.DosePerKg != nil {
 			per = perKgPair(*b.DosePerKg, m.Unit)
 		}
-		if b.Drafted {
-			cell = bold
-			if draftedByBasis(ws) {
-				name += ", drafted"
-			} else {
-				name += ", used"
-			}
+		if basisUsed(ws, b) {
+			name, cell = name+", basis used", bold
 		}
 		t.rows = append(t.rows, tableRow{cells: [][]run{{cell(name)}, {cell(rate(b.PatientW))}, {cell(rate(b.ModelW))}, {cell(metabolic.FormatRatio(b.Specific))}, {cell(per)}}})
 	}
@@ -81,7 +73,9 @@ func (s *sheet) temperatures() {
 		return
 	}
 	f.heading("At another body temperature")
-	t := pageTable{columns: []tableColumn{{head: "body temperature", align: alignDecimal}, {head: "S", align: alignDecimal}, {head: "dose per kg", align: alignDecimal}, {head: "interval"}}}
+	t := pageTable{columns: []tableColumn{{head: "body temperature", align: alignDecimal}, {head: "S", align: alignDecimal}, {head: "dose per kg", align: alignDecimal}, {head: "interval"}, {head: "in a day", align: alignDecimal}, {head: amountHead(m), align: alignDecimal}}}
+	amount := temperatureAmounts(ws.Temperature, m.Unit)
+	daily := false
 	for i := range ws.Temperature {
 		l := &ws.Temperature[i]
 		cell, note := plain, ""
@@ -92,8 +86,11 @@ func (s *sheet) temperatures() {
 		if l.IntervalH > 0 {
 			every = intervalWords("", &l.IntervalH)
 		}
-		t.rows = append(t.rows, tableRow{cells: [][]run{{cell(metabolic.FormatCelsius(metabolic.Celsius(l.TemperatureC)) + note)}, {cell(metabolic.FormatRatio(l.Specific))}, {cell(perKgPair(l.DosePerKg, m.Unit))}, {cell(every)}}})
+		t.rows = append(t.rows, tableRow{cells: [][]run{{cell(metabolic.FormatCelsius(metabolic.Celsius(l.TemperatureC)) + note)}, {cell(metabolic.FormatRatio(l.Specific))}, {cell(perKgPair(l.DosePerKg, m.Unit))}, {cell(every)},
+			{cell(strings.TrimSuffix(dailyPair(l.DailyPerKg, m.Unit), "/day"))}, {cell(amount(l.Amount))}}})
+		daily = daily || l.DailyPerKg != nil
 	}
+	t.drop(map[int]bool{4: !daily})
 	s.table(t)
 }
 

@@ -35,7 +35,7 @@ func (s *sheet) caution(c *dose.Caution) {
 	if c.Overridden {
 		by := "OVERRIDDEN"
 		if s.ws.PreparedBy != "" {
-			by += " by " + s.ws.PreparedBy
+			by += " (sheet prepared by " + s.ws.PreparedBy + ")"
 		}
 		it.under = []run{bold(by + ": "), plain(c.Reason)}
 	}
@@ -53,26 +53,11 @@ func (s *sheet) publishedDoses() {
 	t := pageTable{columns: []tableColumn{{head: "animal"}, {head: "kinship"}, {head: "dose as published"}, {head: "drafted v. published, a day"}, {head: "source", grow: 1}}}
 	for i := range s.ws.Published {
 		p := &s.ws.Published[i]
-		given := asGiven(p.DoseTyped)
-		if p.DosePerKg != nil {
-			given = perKgPair(*p.DosePerKg, p.Unit)
-		}
-		if p.Route != "" {
-			given += " " + p.Route
-		}
-		switch {
-		case p.IntervalH != nil:
-			given += " " + intervalWords("", p.IntervalH)
-		case strings.HasSuffix(p.Unit, "/h"):
-			given += ", " + intervalWords("infusion", nil)
-		default:
-			given += " " + intervalWords("once", nil)
-		}
 		ratio := "not compared"
 		if p.DailyRatio > 0 {
 			ratio = metabolic.FormatRatio(p.DailyRatio) + " times"
 		}
-		t.rows = append(t.rows, tableRow{cells: cellTexts(animalWords(p.CommonName, p.Species), relationWords(p.Relation), given, ratio, p.Source)})
+		t.rows = append(t.rows, tableRow{cells: cellTexts(animalWords(p.CommonName, p.Species), relationWords(p.Relation), publishedWords(p), ratio, p.Source)})
 	}
 	t.drop(map[int]bool{3: s.ws.Drafted == nil})
 	s.table(t)
@@ -96,6 +81,10 @@ func (s *sheet) proposed() {
 		verdict += ", and raises a STOP"
 	}
 	f.heading("Proposed regimen: " + verdict)
+	raised := proposedCautions(p)
+	for i := range raised {
+		s.caution(&raised[i])
+	}
 	t := pageTable{columns: []tableColumn{{}, {head: "proposed"}, {head: "drafted"}, {head: "proposed / drafted", align: alignDecimal}}}
 	ratio := func(v float64) string {
 		if v == 0 {
@@ -114,6 +103,11 @@ func (s *sheet) proposed() {
 	}
 	row := func(cells ...string) { t.rows = append(t.rows, tableRow{cells: cellTexts(cells...)}) }
 	row("dose per kg", perKgPair(p.DosePerKg, p.Unit), perKgPair(d.DosePerKg, d.Unit), ratio(p.Ratios.Dose))
+	amount, proposed, drafted := proposedAmounts(p, d)
+	row(amount, proposed, drafted, "")
+	if len(p.Measured) > 0 && s.ws.Product != nil {
+		row("measured", volumeWords(p.Measured), volumeWords(s.ws.Product.Ends), "")
+	}
 	row("interval", every(p.IntervalH), every(d.IntervalH), ratio(p.Ratios.Interval))
 	row("daily", dailyPair(p.DailyPerKg, p.Unit), dailyPair(d.DailyPerKg, d.Unit), ratio(p.Ratios.Daily))
 	if p.Ratios.Peak != nil {
@@ -123,13 +117,7 @@ func (s *sheet) proposed() {
 		row("trough", "", "", ratio(*p.Ratios.Trough))
 	}
 	s.table(t)
-	for _, v := range p.Verdict {
-		if strings.HasPrefix(v, "It raises ") {
-			continue // the caution itself stands below
-		}
+	for _, v := range verdictWords(p) {
 		f.bullet(paraStyle{}, plain(paperText(v)))
-	}
-	for i := range p.Cautions {
-		s.caution(&p.Cautions[i])
 	}
 }

@@ -5,7 +5,6 @@ import (
 	"strings"
 
 	"tayra/dose"
-	"tayra/metabolic"
 )
 
 // sizeAmount is the second line of the draft: the dose per kg.
@@ -32,20 +31,31 @@ func (s *sheet) draftBox() {
 			perKg = append(perKg, plain(", in a day "+strings.TrimSuffix(daily, "/day")))
 		}
 		f.paragraph(paraStyle{size: sizeAmount, gap: 1}, perKg...)
-		if d.Plan == string(dose.PlanOnce) {
-			f.para(bold("Start at the low end."), plain(" The two ends follow two rules: by clearance it matches the model's area under the curve, by volume its peak. No interval is drafted."))
-		}
-		if l := ws.Loading; l != nil && l.DosePerKg != nil && l.PerAdministration != nil {
-			runs := []run{bold("Loading dose, once, first: " + amountPair(*l.PerAdministration, l.Unit)), plain(" (" + perKgPair(*l.DosePerKg, l.Unit))}
-			if l.Range90 != nil {
-				runs = append(runs, plain("; nine times in ten "+perKgRange(*l.Range90, l.Unit)))
+		// What outranks the dose, or contradicts it, is read in one glance
+		// with it.
+		for _, x := range []string{outrankedWords(ws), d.Disagreement} {
+			if x != "" {
+				f.para(bold(paperText(x)))
 			}
-			f.para(append(runs, plain(")."))...)
+		}
+		for _, x := range massEnds(ws) {
+			f.paragraph(paraStyle{gap: 1}, plain(capital(x)+"."))
+		}
+		if d.Plan == string(dose.PlanOnce) {
+			runs := []run{plain("The two ends follow two rules: by clearance it matches the model's area under the curve, by volume its peak. No interval is drafted.")}
+			if startLow(ws) {
+				runs = append([]run{bold("Start at the low end. ")}, runs...)
+			}
+			f.para(runs...)
+		}
+		if l := ws.Loading; l != nil {
+			if order, about := loadingWords(ws); order != "" {
+				f.para(bold(order), plain(" "+about))
+			} else {
+				f.para(bold("No loading dose."), plain(" "+l.Text))
+			}
 		}
 		s.rangeTable(f)
-		if d.Disagreement != "" {
-			f.paragraph(paraStyle{gap: 2}, bold(d.Disagreement))
-		}
 		f.para(plain(d.Meaning))
 		if s.from != nil {
 			from := "Drafted from the " + modelWords(s.from) + "."
@@ -72,6 +82,7 @@ func (s *sheet) rangeTable(f *flow) {
 	if _, perHour := unitOf(d.Unit); perHour {
 		amount = "amount per hour"
 	}
+	even, ninety := amountRanges(d)
 	if d.Plan == string(dose.PlanOnce) && s.from != nil {
 		by := ""
 		for i := range ws.Bases {
@@ -80,7 +91,7 @@ func (s *sheet) rangeTable(f *flow) {
 			}
 		}
 		row("by clearance", by, perKgRange(d.Range50, d.Unit), perKgRange(d.Range90, d.Unit))
-		row("amount by clearance", "", amountRange(d.Range50Amount, d.Unit), amountRange(d.Range90Amount, d.Unit))
+		row("amount by clearance", "", even, ninety)
 		if r := s.from.VolumeRange90; r != nil {
 			row("by volume", perKgPair(s.from.DosePerKg, d.Unit), "", perKgRange(*r, d.Unit))
 		}
@@ -88,15 +99,7 @@ func (s *sheet) rangeTable(f *flow) {
 		row(amount, amountPair(d.PerAdministration, d.Unit), "", "")
 	} else {
 		row("dose per kg", perKgPair(d.DosePerKg, d.Unit), perKgRange(d.Range50, d.Unit), perKgRange(d.Range90, d.Unit))
-		row(amount, amountPair(d.PerAdministration, d.Unit), amountRange(d.Range50Amount, d.Unit), amountRange(d.Range90Amount, d.Unit))
-	}
-	for _, end := range []struct {
-		kg float64
-		at *dose.Pair
-	}{{ws.Patient.MassLowKg, d.AtLowMass}, {ws.Patient.MassHighKg, d.AtHighMass}} {
-		if end.at != nil {
-			row("if it weighs "+metabolic.FormatMass(metabolic.Mass(end.kg)), amountPair(*end.at, d.Unit), "", "")
-		}
+		row(amount, amountPair(d.PerAdministration, d.Unit), even, ninety)
 	}
 	f.table(t)
 }

@@ -50,7 +50,7 @@ func (s *sheet) head(f *flow, page, pages int) {
 	if p.Stage != "" {
 		about = append(about, p.Stage)
 	}
-	about = append(about, p.Condition...)
+	about = append(about, conditionWords(p.Condition)...)
 	if p.CommonName != "" {
 		about = append(about, p.Species)
 	}

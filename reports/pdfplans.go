@@ -29,11 +29,11 @@ func (s *sheet) theCase() {
 	}
 	condition := "nothing said"
 	if len(p.Condition) > 0 {
-		condition = strings.Join(p.Condition, ", ")
+		condition = strings.Join(conditionWords(p.Condition), ", ")
 	}
 	adults := "none on file"
 	if a := p.AdultMassKg; a != nil {
-		adults = metabolic.FormatRange(a[0], a[1], func(kg float64) string { return metabolic.FormatMass(metabolic.Mass(kg)) })
+		adults = massRange(a[0], a[1])
 	}
 	pairs := []keyValue{{"Case", []run{plain(caseWords(ws))}}, {"Prepared by", []run{plain(orDefault(ws.PreparedBy, "not said"))}}}
 	add := func(key, value string) { pairs = append(pairs, keyValue{key, []run{plain(value)}}) }
@@ -68,17 +68,8 @@ func (s *sheet) plans() {
 	p := &ws.Patient
 	patient := animalWords(p.CommonName, p.Species)
 	f.heading("From " + modelName(m) + " to " + patient)
-	if ws.Drafted != nil {
-		f.para(plain("Model: " + modelWords(m) + ". Source: " + m.Source + "."))
-	} else {
-		where := "After a stop its dose is not printed; it stands in the attached case."
-		for _, c := range activeStops(ws) {
-			if c.Slug == string(dose.SameSpecies) {
-				where = "Its dose stands above, as published."
-			}
-		}
-		f.para(plain("Model: " + modelName(m) + ". Source of its dose: " + m.Source + ". " + where))
-	}
+	model, source := modelAndSource(ws, m)
+	f.para(plain("Model: " + model + ". Source: " + source + "."))
 	if x := ws.DraftedFrom; x.Why != "" && len(ws.Drafts) > 1 {
 		f.keepNext()
 		f.para(plain("Chosen among the models as " + x.Why + "."))
@@ -110,7 +101,7 @@ func (s *sheet) plans() {
 	s.table(planTable(m))
 	for i := range m.Plans {
 		q := &m.Plans[i]
-		text := paperText(q.Remark)
+		text := paperText(bracketWords(ws, q.Remark))
 		if x := massChoices(ws, q.AtLowMass, q.AtHighMass, q.Unit); x != "" {
 			text = joinNonEmpty(text, "amount: "+x, "; ")
 		}
@@ -119,16 +110,21 @@ func (s *sheet) plans() {
 		}
 	}
 	d := ws.Drafted
-	f.para(bold("Drafted: "+planWords(d.Plan)+", "+chosenWords(d)+". "), plain(capital(paperText(d.Why))+"."))
+	f.para(bold("Drafted: "+planWords(d.Plan)+", "+chosenWords(d)+". "), plain(capital(paperText(bracketWords(ws, d.Why)))+"."))
+}
+
+// amountHead heads a column of amounts.
+func amountHead(m *dose.ModelDraft) string {
+	if m.Kind == "infusion" {
+		return "amount per hour"
+	}
+	return "amount each time"
 }
 
 // planTable is one row a plan, the drafted one in bold.
 func planTable(m *dose.ModelDraft) pageTable {
-	amount := "amount each time"
-	if m.Kind == "infusion" {
-		amount = "amount per hour"
-	}
-	t := pageTable{columns: []tableColumn{{head: "plan"}, {head: "dose per kg", align: alignDecimal}, {head: amount, align: alignDecimal}, {head: "every"}, {head: "in a day", align: alignDecimal}, {head: "average v. model's"}}}
+	amount := planAmounts(m)
+	t := pageTable{columns: []tableColumn{{head: "plan"}, {head: "dose per kg", align: alignDecimal}, {head: amountHead(m), align: alignDecimal}, {head: "every"}, {head: "in a day", align: alignDecimal}, {head: "average v. model's"}}}
 	for i := range m.Plans {
 		q := &m.Plans[i]
 		name, cell := planWords(q.Name), plain
@@ -147,7 +143,7 @@ func planTable(m *dose.ModelDraft) pageTable {
 			every = hoursCell(*q.IntervalH)
 		}
 		row := tableRow{}
-		for _, c := range []string{name, perKgPair(q.DosePerKg, q.Unit), amountPair(q.PerAdministration, q.Unit), every, strings.TrimSuffix(dailyPair(q.DailyPerKg, q.Unit), "/day"), average} {
+		for _, c := range []string{name, perKgPair(q.DosePerKg, q.Unit), amount(q.PerAdministration), every, strings.TrimSuffix(dailyPair(q.DailyPerKg, q.Unit), "/day"), average} {
 			row.cells = append(row.cells, []run{cell(c)})
 		}
 		t.rows = append(t.rows, row)

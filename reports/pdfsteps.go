@@ -29,11 +29,7 @@ func (s *sheet) steps() {
 		}
 		f.heading(title)
 		if n == 0 {
-			text := "t is the patient, m the model. Results are printed to 6 figures; a pocket calculator fed with them ends at the printed dose to 3."
-			if ws.Drafted == nil {
-				text = "t is the patient, m the model. Results are printed to 6 figures. After a stop the reckoning ends at the ratios."
-			}
-			f.para(plain(text))
+			f.para(plain(stepsWords(ws)))
 			f.keepNext()
 		}
 		seen := map[string]int{}

@@ -23,7 +23,7 @@ func (s *sheet) syringe() {
 		text += " (given as " + typed + ")"
 	}
 	switch {
-	case len(p.Pump) > 0:
+	case p.StepML > 0 && s.from != nil && s.from.Kind == "infusion":
 		text += "; the pump is set in steps of " + measuredWords(p.StepML, "mL/h")
 	case p.StepML > 0:
 		text += "; smallest step of the syringe " + measuredWords(p.StepML, "mL")
@@ -52,14 +52,29 @@ func (s *sheet) syringe() {
 		s.administration(endWords(i, len(p.Ends)), &p.Ends[i])
 	}
 	for i := range p.Pump {
-		if a := &p.Pump[i]; a.BelowStep {
-			text := endWords(i, len(p.Pump)) + "the rate is under one step of the pump."
-			if a.DiluteTo > 0 {
-				text += " Dilute " + dilutionWords(a.DilutePartIn) + ", to " + perMLWords(a.DiluteTo, s.unit) + "."
-			}
-			f.bullet(paraStyle{}, plain(capital(text)))
+		switch a := &p.Pump[i]; {
+		case a.Dilution != nil:
+			s.mixing(endWords(i, len(p.Pump)), a.Dilution, true)
+		case a.BelowStep:
+			f.bullet(paraStyle{}, plain(capital(endWords(i, len(p.Pump))+"the rate is under one step of the pump, and no usual dilution can be set either.")))
 		}
 	}
+	for i, n := 0, len(loadingEnds(s.ws)); i < n; i++ {
+		s.administration(loadingLead(i, n)+": ", &s.ws.Loading.Measured[i])
+	}
+}
+
+// loadingEnds are the loading dose as it is measured out; none without one.
+func loadingEnds(ws *dose.Worksheet) []dose.Administration {
+	if ws.Loading == nil {
+		return nil
+	}
+	return ws.Loading.Measured
+}
+
+// loadingLead names a loading dose, or one end of it.
+func loadingLead(i, n int) string {
+	return strings.TrimSuffix("loading dose, "+strings.TrimSuffix(endWords(i, n), ": "), ", ")
 }
 
 // errorCell is errorWords under a head that says what it is against.
@@ -91,14 +106,18 @@ func (s *sheet) measureTable() {
 		}
 		return " (" + countWord(float64(n), "container") + ")"
 	}
+	one := func(name string, a *dose.Administration, unit string) []string {
+		cells := []string{name, amountWords(a.AmountAsked, unit), exactWords(a.Exact, a.Measure), "under one step", "", "", "", ""}
+		if d := a.Dilution; d != nil {
+			cells[3], cells[4], cells[5] = measuredWords(d.DrawML, "mL")+" of the dilution", amountWords(d.AmountGiven, unit), errorCell(d.ErrorPercent)
+		} else if !a.BelowStep {
+			cells[3], cells[4], cells[5] = measuredWords(a.Measured, a.Measure), amountWords(a.AmountGiven, unit), errorCell(a.ErrorPercent)
+		}
+		return cells
+	}
 	for i := range p.Ends {
 		a := &p.Ends[i]
-		cells := []string{end(i, len(p.Ends)), amountWords(a.AmountAsked, s.unit), exactWords(a.Exact, a.Measure), "under one step", "", "", "", ""}
-		if d := a.Dilution; d != nil {
-			cells[3], cells[4], cells[5] = measuredWords(d.DrawML, "mL")+" of the dilution", amountWords(d.AmountGiven, s.unit), errorCell(d.ErrorPercent)
-		} else if !a.BelowStep {
-			cells[3], cells[4], cells[5] = measuredWords(a.Measured, a.Measure), amountWords(a.AmountGiven, s.unit), errorCell(a.ErrorPercent)
-		}
+		cells := one(end(i, len(p.Ends)), a, s.unit)
 		if p.Days > 0 && a.Administrations > 0 {
 			cells[6] = countWord(float64(a.Administrations), "dose") + " in " + countWord(p.Days, "day")
 			if a.Total > 0 {
@@ -114,13 +133,18 @@ func (s *sheet) measureTable() {
 			asked = amountWords(d.PerAdministration[min(i+2-len(p.Pump), 1)], s.unit)
 		}
 		cells := []string{end(i, len(p.Pump)), asked, metabolic.Significant(a.ExactMLPerH, 4) + " mL/h", "under one step", "", "", "", ""}
-		if !a.BelowStep {
+		if d := a.Dilution; d != nil {
+			cells[3], cells[4], cells[5] = measuredWords(d.DrawML, "mL/h")+" of the dilution", amountWords(d.AmountGiven, s.unit), errorCell(d.ErrorPercent)
+		} else if !a.BelowStep {
 			cells[3], cells[4], cells[5] = measuredWords(a.MLPerH, "mL/h"), amountWords(a.AmountPerHour, s.unit), errorCell(a.ErrorPercent)
 		}
 		if p.Days > 0 && a.TotalML > 0 {
 			cells[6], cells[7] = countWord(p.Days, "day"), measuredWords(a.TotalML, "mL")+containers(a.Containers)
 		}
 		row(cells...)
+	}
+	for i, n := 0, len(loadingEnds(s.ws)); i < n; i++ {
+		row(one(loadingLead(i, n), &s.ws.Loading.Measured[i], s.ws.Loading.Unit)...)
 	}
 	if len(t.rows) == 0 {
 		return
@@ -133,26 +157,27 @@ func (s *sheet) measureTable() {
 func (s *sheet) administration(lead string, a *dose.Administration) {
 	f := s.f
 	if d := a.Dilution; d != nil {
-		f.together(func(f *flow) {
-			f.para(bold(capital(lead + "dilute " + dilutionWords(d.Factor) + ":")))
-			of := "the product"
-			n := 0
-			for i := range d.Steps {
-				x := &d.Steps[i]
-				n++
-				f.paragraph(paraStyle{indent: 10, gap: 2}, bold(fmt.Sprintf("%d. ", n)), plain("Take "+measuredWords(x.TakeML, "mL")+" of "+of+", add diluent "+measuredWords(x.AddML, "mL")+": "+
-					measuredWords(x.TotalML, "mL")+" of "+perMLWords(x.AmountPerML, s.unit)+". Label it."))
-				of = "that"
-			}
-			f.paragraph(paraStyle{indent: 10, gap: 2}, bold(fmt.Sprintf("%d. Draw %s", n+1, measuredWords(d.DrawML, "mL"))),
-				plain(" (exactly "+metabolic.Significant(d.ExactML, 4)+" mL): "+amountWords(d.AmountGiven, s.unit)+", "+errorWords(d.ErrorPercent)+"."))
-		})
+		s.mixing(lead, d, false)
 	} else if a.BelowStep {
 		f.bullet(paraStyle{}, plain(capital(lead+"the dose is under one step, and no usual dilution can be measured either.")))
 	}
 	if len(a.Sites) > 1 {
 		f.bullet(paraStyle{}, plain(capital(lead+"divide over "+countWord(float64(len(a.Sites)), "site")+": "+siteWords(a.Sites)+".")))
 	}
+}
+
+// mixing is the steps of a dilution, kept on one page.
+func (s *sheet) mixing(lead string, d *dose.Dilution, perHour bool) {
+	s.f.together(func(f *flow) {
+		f.para(bold(capital(lead + "dilute " + dilutionWords(d.Factor) + ":")))
+		for i, step := range mixingWords(d, s.unit, perHour) {
+			text := plain(step)
+			if i == len(d.Steps) {
+				text = bold(step)
+			}
+			f.paragraph(paraStyle{indent: 10, gap: 2}, bold(fmt.Sprintf("%d. ", i+1)), text)
+		}
+	})
 }
 
 // sitesWords says on the first page that a volume goes to several places.

@@ -119,13 +119,12 @@ func (t *terminal) head(ws *dose.Worksheet, o TextOptions) {
 	if p.Stage != "" {
 		about = append(about, p.Stage)
 	}
-	about = append(about, p.Condition...)
+	about = append(about, conditionWords(p.Condition)...)
 	if p.TemperatureC != nil {
 		about = append(about, "body "+metabolic.FormatCelsius(metabolic.Celsius(*p.TemperatureC)))
 	}
 	if a := p.AdultMassKg; a != nil {
-		adults := metabolic.FormatRange(a[0], a[1], func(kg float64) string { return metabolic.FormatMass(metabolic.Mass(kg)) })
-		about = append(about, "adults weigh "+adults)
+		about = append(about, "adults weigh "+massRange(a[0], a[1]))
 	}
 	switch p.FoodProducing {
 	case "true":
@@ -157,10 +156,20 @@ func (t *terminal) draftBox(ws *dose.Worksheet) {
 		perKg += ", that is " + daily
 	}
 	t.text(0, perKg+".")
-	if d.Plan == "once" {
-		t.text(0, "A bracket of two rules, by volume and by clearance: start at the low end.")
+	// What outranks the dose, or contradicts it, is read in one glance with it.
+	for _, x := range []string{outrankedWords(ws), d.Disagreement} {
+		if x != "" {
+			t.para(0, words{}, words{styleWarn, x})
+		}
 	}
-	if s := massChoices(ws, d.AtLowMass, d.AtHighMass, d.Unit); s != "" {
+	for _, x := range massEnds(ws) {
+		t.text(0, capital(x)+".")
+	}
+	if d.Plan == "once" {
+		s := "A bracket of two rules, by volume and by clearance"
+		if startLow(ws) {
+			s += ": start at the low end"
+		}
 		t.text(0, s+".")
 	}
 	if m := draftedModel(ws); m != nil {
@@ -171,28 +180,24 @@ func (t *terminal) draftBox(ws *dose.Worksheet) {
 		t.text(0, "From "+modelWords(m)+"."+route)
 	}
 	if l := ws.Loading; l != nil {
-		s := "No loading dose. "
-		if l.DosePerKg != nil && l.PerAdministration != nil {
-			s = "Loading dose, once, first: " + amountPair(*l.PerAdministration, l.Unit) + " (" + perKgPair(*l.DosePerKg, l.Unit) + ")"
-			if l.Range90 != nil {
-				s += "; nine times in ten " + perKgRange(*l.Range90, l.Unit)
-			}
-			s += ". "
+		order, about := loadingWords(ws)
+		if order == "" {
+			t.text(0, "No loading dose. "+l.Text)
+		} else {
+			t.para(0, words{}, words{styleHead, order})
+			t.text(0, joinNonEmpty(about, l.Text, " "))
 		}
-		t.text(0, s+l.Text)
 	}
 	t.blank()
+	even, ninety := amountRanges(d)
 	tb := &table{head: []string{"", "per kg", "amount"}}
-	tb.row("as likely as not", perKgRange(d.Range50, d.Unit), amountRange(d.Range50Amount, d.Unit))
-	tb.row("nine times in ten", perKgRange(d.Range90, d.Unit), amountRange(d.Range90Amount, d.Unit))
+	tb.row("as likely as not", perKgRange(d.Range50, d.Unit), even)
+	tb.row("nine times in ten", perKgRange(d.Range90, d.Unit), ninety)
 	t.table(tb)
 	if m := draftedModel(ws); m != nil && m.VolumeRange90 != nil {
 		t.text(tableIndent, "The end of the bracket that follows volume: nine times in ten "+perKgRange(*m.VolumeRange90, m.Unit)+".")
 	}
 	t.text(0, d.Meaning)
-	if d.Disagreement != "" {
-		t.para(0, words{}, words{styleWarn, d.Disagreement})
-	}
 	t.blank()
 	t.para(0, words{}, words{worstStyle(ws), worstWords(ws)})
 	t.shut()
@@ -275,26 +280,11 @@ func (t *terminal) publishedDoses(ws *dose.Worksheet) {
 	t.heading("PUBLISHED DOSES")
 	for i := range ws.Published {
 		p := &ws.Published[i]
-		s := asGiven(p.DoseTyped)
-		if p.DosePerKg != nil {
-			s = perKgPair(*p.DosePerKg, p.Unit)
-		}
-		if p.Route != "" {
-			s += " " + p.Route
-		}
-		switch {
-		case p.IntervalH != nil:
-			s += " " + intervalWords("", p.IntervalH)
-		case strings.Contains(p.Unit, "/h"):
-			s += " " + intervalWords("infusion", nil)
-		default:
-			s += " " + intervalWords("once", nil)
-		}
 		who := animalWords(p.CommonName, p.Species)
 		if r := relationWords(p.Relation); r != "" {
 			who += " (" + r + ")"
 		}
-		t.para(tableIndent, words{text: who + ":"}, words{text: s})
+		t.para(tableIndent, words{text: who + ":"}, words{text: publishedWords(p)})
 		if p.DailyRatio > 0 {
 			t.text(tableIndent+2, "The drafted daily amount per kg is "+metabolic.FormatRatio(p.DailyRatio)+" times this.")
 		}
@@ -321,10 +311,11 @@ func (t *terminal) proposed(ws *dose.Worksheet) {
 		verdict += ", and raises a STOP"
 	}
 	t.heading("PROPOSED REGIMEN: " + verdict)
-	for _, v := range p.Verdict {
-		if strings.HasPrefix(v, "It raises") && len(p.Cautions) > 0 {
-			continue // they follow, with their marks
-		}
+	raised := proposedCautions(p)
+	for i := range raised {
+		t.caution(ws, &raised[i])
+	}
+	for _, v := range verdictWords(p) {
 		t.para(tableIndent, words{text: "-"}, words{text: v})
 	}
 	if d == nil {
@@ -345,6 +336,11 @@ func (t *terminal) proposed(ws *dose.Worksheet) {
 	}
 	kind := d.Plan
 	tb.row("dose", perKgPair(p.DosePerKg, p.Unit), perKgPair(d.DosePerKg, d.Unit), ratio(p.Ratios.Dose))
+	amount, proposed, drafted := proposedAmounts(p, d)
+	tb.row(amount, proposed, drafted)
+	if len(p.Measured) > 0 && ws.Product != nil {
+		tb.row("measured", volumeWords(p.Measured), volumeWords(ws.Product.Ends))
+	}
 	tb.row("daily", dailyPair(p.DailyPerKg, p.Unit), dailyPair(d.DailyPerKg, d.Unit), ratio(p.Ratios.Daily))
 	tb.row("interval", every(p.IntervalH, kind), every(d.IntervalH, kind), ratio(p.Ratios.Interval))
 	if p.Ratios.Peak != nil {
@@ -354,9 +350,6 @@ func (t *terminal) proposed(ws *dose.Worksheet) {
 		tb.row("trough", "", "", ratio(*p.Ratios.Trough))
 	}
 	t.table(tb)
-	for i := range p.Cautions {
-		t.caution(ws, &p.Cautions[i])
-	}
 }
 
 // foot says what every page of the paper says. The digest of the record stands

@@ -55,7 +55,7 @@ func TestDraftBox(t *testing.T) {
 		}
 		box := boxOf(t, e.ws)
 		for _, want := range []string{e.ws.Drug.Name, amountPair(d.PerAdministration, d.Unit), perKgPair(d.DosePerKg, d.Unit), d.Route, intervalWords(d.Plan, d.IntervalH),
-			perKgRange(d.Range50, d.Unit), perKgRange(d.Range90, d.Unit), amountRange(d.Range90Amount, d.Unit), d.Meaning, d.Disagreement, giveWords(e.ws.Product, d.Unit), levelWord(e.ws.Cautions[0].Level)} {
+			perKgRange(d.Range50, d.Unit), perKgRange(d.Range90, d.Unit), amountRange(d.Range90Amount, d.Unit), d.Meaning, d.Disagreement, outrankedWords(e.ws), giveWords(e.ws.Product, d.Unit), levelWord(e.ws.Cautions[0].Level)} {
 			if !strings.Contains(box, oneLine(want)) {
 				t.Errorf("%s: the box has no %q:\n%s", e.name, want, box)
 			}
@@ -215,7 +215,7 @@ func TestTextIsWhole(t *testing.T) {
 			for _, p := range d.Plans {
 				want("a plan", planWords(p.Name))
 				want("its dose", perKgPair(p.DosePerKg, p.Unit))
-				want("its remark", p.Remark)
+				want("its remark", bracketWords(e.ws, p.Remark))
 			}
 			for _, p := range d.Parts {
 				want("a part of the range", p.Name)
@@ -231,13 +231,22 @@ func TestTextIsWhole(t *testing.T) {
 			want("a criterion", c.Text)
 		}
 		for _, b := range e.ws.Bases {
-			want("a basis", b.Basis+" "+metabolic.FormatRatio(b.Specific))
+			label := basisLabel(&b, false)
+			if b.Drafted {
+				label += ", basis used"
+			}
+			want("a basis", label+" "+metabolic.FormatRatio(b.Specific))
 		}
 		for _, u := range e.ws.Unavailable {
 			want("a basis that is not there", u.Why)
 		}
 		if p := e.ws.Proposed; p != nil {
-			want("the verdict", p.Verdict[0])
+			for _, v := range verdictWords(p) {
+				want("the verdict", v)
+			}
+			for _, c := range p.Cautions {
+				want("what it raises", "["+levelWord(c.Level)+"] "+c.Text)
+			}
 		}
 		want("the note on curves", e.ws.CurvesNote)
 		if e.ws.Loading != nil {
@@ -323,8 +332,12 @@ func TestCorners(t *testing.T) {
 			ws.Product.Ends[0] = dose.Administration{AmountAsked: 0.001, Unit: "mg", Measure: "mL", Exact: 0.00002, BelowStep: true}
 		}, []string{"How to measure it out: see SYRINGE AND COURSE.", "1 mcg is exactly 0.00002 mL: under one step, and no usual dilution can be measured either."}},
 		{"infusion", func(ws *dose.Worksheet) {
-			ws.Product.Pump[0] = dose.Pump{ExactMLPerH: 0.04, BelowStep: true, DiluteTo: 0.1, DilutePartIn: 10, TotalML: 1.2, Containers: 2}
-		}, []string{"Exactly 0.04 mL/h, under one step of the pump. Dilute 1 in 10, to 0.1 mg/mL.", "Over 1 day: 1.2 mL of the product, 2 containers."}},
+			ws.Product.Pump[0] = dose.Pump{ExactMLPerH: 0.04, BelowStep: true, DiluteTo: 0.1, DilutePartIn: 10, TotalML: 1.2, Containers: 2,
+				Dilution: &dose.Dilution{Factor: 10, Steps: []dose.DilutionStep{{TakeML: 1, AddML: 9, TotalML: 10, AmountPerML: 0.1}}, AmountPerML: 0.1, ExactML: 0.4, DrawML: 0.4, AmountGiven: 0.04}}
+		}, []string{"= 0.4 mL/h of the product diluted 1 in 10 (40 mcg/h)", "Exactly 0.04 mL/h, under one step of the pump. Dilute 1 in 10:", "Take 1 mL of the product, add diluent 9 mL: 10 mL of 0.1 mg/mL.",
+			"Set the pump to 0.4 mL/h (exactly 0.4 mL/h): 40 mcg/h, exactly as drafted.", "Over 1 day: 1.2 mL of the product, 2 containers."}},
+		{"infusion", func(ws *dose.Worksheet) { ws.Product.Pump[0] = dose.Pump{ExactMLPerH: 0.0000001, BelowStep: true} },
+			[]string{"How to measure it out: see SYRINGE AND COURSE.", "under one step of the pump, and no usual dilution can be set either."}},
 		{"anteater", func(ws *dose.Worksheet) {
 			ws.Published = []dose.PublishedDose{
 				{CommonName: "southern tamandua", DoseTyped: ".5-1.0 g", Unit: "mg/kg", Relation: "order", Source: "a", IntervalH: hours(72)},

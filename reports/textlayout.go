@@ -302,7 +302,11 @@ func (t *terminal) table(tb *table) {
 			}, styleFaint)
 		}
 		for r := range tb.rows {
-			write(func(c column) string { return c.cells[r] }, styleNone)
+			s := styleNone
+			if strings.HasPrefix(cols[0].cells[r], chosenMark) {
+				s = styleHead
+			}
+			write(func(c column) string { return c.cells[r] }, s)
 		}
 		if next < len(cols) {
 			t.blank()

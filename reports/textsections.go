@@ -2,7 +2,6 @@ package reports
 
 import (
 	"fmt"
-	"math"
 	"strings"
 
 	"tayra/dose"
@@ -31,7 +30,8 @@ func (t *terminal) plans(ws *dose.Worksheet) {
 	}
 	p := &ws.Patient
 	t.heading("FROM " + strings.ToUpper(modelName(m)) + " TO " + strings.ToUpper(animalWords(p.CommonName, p.Species)))
-	t.text(tableIndent, "Model: "+modelWords(m)+". Source: "+m.Source+".")
+	model, source := modelAndSource(ws, m)
+	t.text(tableIndent, "Model: "+model+". Source: "+source+".")
 	if typed := modelTyped(ws, ws.DraftedFrom.Index); typed != "" {
 		t.text(tableIndent, capital(modelName(m))+" ("+m.Model+")"+typed+".")
 	}
@@ -51,19 +51,20 @@ func (t *terminal) plans(ws *dose.Worksheet) {
 	}
 	t.heading("THE PLANS SIDE BY SIDE")
 	tb = &table{head: []string{"", "dose", "amount", "every", "daily", "average\nv. model"}}
+	amount := planAmounts(m)
 	for i := range m.Plans {
 		q := &m.Plans[i]
 		every := "" // the name of the plan says it
 		if q.IntervalH != nil {
 			every = hoursCell(*q.IntervalH)
 		}
-		tb.row(marked(q.Name == m.Plan, planWords(q.Name)), perKgPair(q.DosePerKg, q.Unit), amountPair(q.PerAdministration, q.Unit),
+		tb.row(marked(q.Name == m.Plan, planWords(q.Name)), perKgPair(q.DosePerKg, q.Unit), amount(q.PerAdministration),
 			every, dailyPair(q.DailyPerKg, q.Unit), averageCell(q))
 	}
 	t.table(tb)
 	for i := range m.Plans {
 		q := &m.Plans[i]
-		s := q.Remark
+		s := bracketWords(ws, q.Remark)
 		if x := massChoices(ws, q.AtLowMass, q.AtHighMass, q.Unit); x != "" {
 			s = joinNonEmpty(s, "amount: "+x, "; ")
 		}
@@ -73,7 +74,7 @@ func (t *terminal) plans(ws *dose.Worksheet) {
 	}
 	if d := ws.Drafted; d != nil {
 		if len(m.Plans) > 1 {
-			t.text(tableIndent, fmt.Sprintf("Drafted: %s, %s. %s.", planWords(d.Plan), chosenWords(d), capital(d.Why)))
+			t.text(tableIndent, fmt.Sprintf("Drafted: %s, %s. %s.", planWords(d.Plan), chosenWords(d), capital(bracketWords(ws, d.Why))))
 		}
 	}
 }
@@ -109,8 +110,9 @@ func (t *terminal) otherBases(ws *dose.Worksheet) {
 	var lines []line
 	for i := range ws.Bases {
 		b := &ws.Bases[i]
-		l := line{label: marked(b.Drafted, b.Basis), s: metabolic.FormatRatio(b.Specific), mark: 'o', bar: '-'}
-		if b.Drafted {
+		l := line{label: marked(basisUsed(ws, b), basisLabel(b, false)), s: metabolic.FormatRatio(b.Specific), mark: 'o', bar: '-'}
+		if basisUsed(ws, b) {
+			l.label += ", basis used"
 			l.mark = '●'
 		}
 		if b.DosePerKg != nil {
@@ -125,35 +127,15 @@ func (t *terminal) otherBases(ws *dose.Worksheet) {
 	}
 	d := ws.Drafted
 	if d != nil {
-		// The rows above are doses at the model's interval. A draft at another
-		// interval is carried there by its daily amount, which is what the
-		// ranges are about.
-		f := 1.0
-		if m.IntervalH != nil && d.IntervalH != nil {
-			f = *m.IntervalH / *d.IntervalH
-		}
 		for _, r := range []struct {
 			label string
 			r     dose.DoseRange
 			mark  rune
 			bar   rune
 		}{{"as likely as not", d.Range50, '|', '━'}, {"nine in ten", d.Range90, '|', '─'}} {
-			low, high := r.r.Low*f, r.r.High*f
-			lines = append(lines, line{label: "  " + r.label, dose: perKgPair(dose.Pair{low, high}, m.Unit), low: low, high: high, mark: r.mark, bar: r.bar})
+			lines = append(lines, line{label: "  " + r.label, dose: perKgRange(r.r, d.Unit), low: r.r.Low, high: r.r.High, mark: r.mark, bar: r.bar})
 		}
-		at := "The same dose " + intervalWords(m.Kind, m.IntervalH)
-		if m.Kind == "repeated" {
-			at = "The dose per kg " + intervalWords(m.Kind, m.IntervalH) + ", as the model is given it"
-		}
-		if math.Abs(f-1) > 1e-9 {
-			at += "; the two ranges are carried to that interval by the daily amount"
-		}
-		if m.Kind == "once" {
-			at = "The dose by clearance, d·S"
-		} else if m.Kind == "infusion" {
-			at = "The rate per kg"
-		}
-		t.text(tableIndent, at+". S is the ratio of rates per kg.")
+		t.text(tableIndent, basesHold(ws)+". S is the ratio of rates per kg.")
 	}
 	tb := &table{head: []string{"", "S", "dose"}}
 	var all []float64
@@ -162,7 +144,7 @@ func (t *terminal) otherBases(ws *dose.Worksheet) {
 		all = append(all, l.low, l.high)
 	}
 	if d != nil {
-		const least = 26
+		const least = 22
 		used := 0
 		for i := range tb.head {
 			w := 0
@@ -217,7 +199,8 @@ func (t *terminal) temperatures(ws *dose.Worksheet) {
 		return
 	}
 	t.heading("AT ANOTHER BODY TEMPERATURE")
-	tb := &table{head: []string{"", "S", "dose", "every"}}
+	tb := &table{head: []string{"", "S", "dose", "every", "daily", "amount"}}
+	amount := temperatureAmounts(ws.Temperature, m.Unit)
 	for i := range ws.Temperature {
 		l := &ws.Temperature[i]
 		here := ws.Patient.TemperatureC != nil && *ws.Patient.TemperatureC == l.TemperatureC
@@ -225,7 +208,7 @@ func (t *terminal) temperatures(ws *dose.Worksheet) {
 		if l.IntervalH > 0 {
 			every = hoursCell(l.IntervalH)
 		}
-		tb.row(marked(here, metabolic.FormatCelsius(metabolic.Celsius(l.TemperatureC))), metabolic.FormatRatio(l.Specific), perKgPair(l.DosePerKg, m.Unit), every)
+		tb.row(marked(here, metabolic.FormatCelsius(metabolic.Celsius(l.TemperatureC))), metabolic.FormatRatio(l.Specific), perKgPair(l.DosePerKg, m.Unit), every, dailyPair(l.DailyPerKg, m.Unit), amount(l.Amount))
 	}
 	t.table(tb)
 }
@@ -270,7 +253,7 @@ func (t *terminal) syringe(ws *dose.Worksheet) {
 		s += " per " + p.Form
 	}
 	switch {
-	case len(p.Pump) > 0:
+	case p.StepML > 0 && m != nil && m.Kind == "infusion":
 		s += "; the pump is set in steps of " + measuredWords(p.StepML, "mL/h")
 	case p.StepML > 0:
 		s += "; smallest step " + measuredWords(p.StepML, "mL")
@@ -300,28 +283,30 @@ func (t *terminal) syringe(ws *dose.Worksheet) {
 		return [...]string{"Low end: ", "High end: "}[i]
 	}
 	for i := range p.Ends {
-		t.administration(end(i, len(p.Ends)), p, &p.Ends[i], unit)
+		t.administration(end(i, len(p.Ends)), p.Days, &p.Ends[i], unit)
 	}
 	for i := range p.Pump {
 		t.pump(end(i, len(p.Pump)), p, &p.Pump[i], unit)
 	}
+	if l := ws.Loading; l != nil {
+		for i := range l.Measured {
+			lead := "Loading dose, once: "
+			if len(l.Measured) > 1 {
+				lead = "Loading dose, once, " + strings.ToLower(end(i, len(l.Measured)))
+			}
+			t.administration(lead, 0, &l.Measured[i], l.Unit)
+		}
+	}
 }
 
-func (t *terminal) administration(lead string, p *dose.ProductRecord, a *dose.Administration, unit string) {
+// administration says how one dose is measured out, and what a course of so many
+// days needs; days is 0 for none.
+func (t *terminal) administration(lead string, days float64, a *dose.Administration, unit string) {
 	exact := exactWords(a.Exact, a.Measure)
 	switch {
 	case a.Dilution != nil:
-		d := a.Dilution
-		t.text(tableIndent, fmt.Sprintf("%s%s is exactly %s, under one step. Dilute %s:", lead, amountWords(a.AmountAsked, unit), exact, dilutionWords(d.Factor)))
-		of := "the product"
-		for i := range d.Steps {
-			x := &d.Steps[i]
-			t.para(tableIndent+2, words{text: fmt.Sprintf("%d.", i+1)}, words{text: fmt.Sprintf("Take %s of %s, add diluent %s: %s of %s.",
-				measuredWords(x.TakeML, "mL"), of, measuredWords(x.AddML, "mL"), measuredWords(x.TotalML, "mL"), perMLWords(x.AmountPerML, unit))})
-			of = "that"
-		}
-		t.para(tableIndent+2, words{text: fmt.Sprintf("%d.", len(d.Steps)+1)}, words{text: fmt.Sprintf("Draw %s (exactly %s mL): %s, %s.",
-			measuredWords(d.DrawML, "mL"), metabolic.Significant(d.ExactML, 4), amountWords(d.AmountGiven, unit), errorWords(d.ErrorPercent))})
+		t.text(tableIndent, fmt.Sprintf("%s%s is exactly %s, under one step. Dilute %s:", lead, amountWords(a.AmountAsked, unit), exact, dilutionWords(a.Dilution.Factor)))
+		t.mixing(a.Dilution, unit, false)
 	case a.BelowStep:
 		t.text(tableIndent, fmt.Sprintf("%s%s is exactly %s: under one step, and no usual dilution can be measured either.", lead, amountWords(a.AmountAsked, unit), exact))
 	default:
@@ -335,8 +320,8 @@ func (t *terminal) administration(lead string, p *dose.ProductRecord, a *dose.Ad
 		}
 		t.text(tableIndent, fmt.Sprintf("Divided over %d sites: %s.", len(a.Sites), strings.Join(parts, ", ")))
 	}
-	if p.Days > 0 && a.Administrations > 0 {
-		s := fmt.Sprintf("Course of %s: %s", countWord(p.Days, "day"), countWord(float64(a.Administrations), "dose"))
+	if days > 0 && a.Administrations > 0 {
+		s := fmt.Sprintf("Course of %s: %s", countWord(days, "day"), countWord(float64(a.Administrations), "dose"))
 		if a.Total > 0 {
 			s += ", " + measuredWords(a.Total, a.Measure) + " of the product in all"
 		}
@@ -347,15 +332,22 @@ func (t *terminal) administration(lead string, p *dose.ProductRecord, a *dose.Ad
 	}
 }
 
+// mixing writes the steps of a dilution.
+func (t *terminal) mixing(d *dose.Dilution, unit string, perHour bool) {
+	for i, step := range mixingWords(d, unit, perHour) {
+		t.para(tableIndent+2, words{text: fmt.Sprintf("%d.", i+1)}, words{text: step})
+	}
+}
+
 func (t *terminal) pump(lead string, p *dose.ProductRecord, a *dose.Pump, unit string) {
 	exact := metabolic.Significant(a.ExactMLPerH, 4) + " mL/h"
-	if a.BelowStep {
-		s := fmt.Sprintf("%sExactly %s, under one step of the pump.", lead, exact)
-		if a.DiluteTo > 0 {
-			s += fmt.Sprintf(" Dilute %s, to %s.", dilutionWords(a.DilutePartIn), perMLWords(a.DiluteTo, unit))
-		}
-		t.text(tableIndent, s)
-	} else {
+	switch {
+	case a.Dilution != nil:
+		t.text(tableIndent, fmt.Sprintf("%sExactly %s, under one step of the pump. Dilute %s:", lead, exact, dilutionWords(a.Dilution.Factor)))
+		t.mixing(a.Dilution, unit, true)
+	case a.BelowStep:
+		t.text(tableIndent, fmt.Sprintf("%sExactly %s: under one step of the pump, and no usual dilution can be set either.", lead, exact))
+	default:
 		t.text(tableIndent, fmt.Sprintf("%sExactly %s; set %s, that is %s, %s.", lead, exact, measuredWords(a.MLPerH, "mL/h"), amountWords(a.AmountPerHour, unit), errorWords(a.ErrorPercent)))
 	}
 	if p.Days > 0 && a.TotalML > 0 {
@@ -491,10 +483,11 @@ func (t *terminal) severalModels(ws *dose.Worksheet) {
 	t.table(tb)
 	for i := range ws.Drafts {
 		d := &ws.Drafts[i]
-		t.para(tableIndent, words{text: "-"}, words{text: modelWords(d) + ". Source: " + d.Source + "."})
+		model, source := modelAndSource(ws, d)
+		t.para(tableIndent, words{text: "-"}, words{text: model + ". Source: " + source + "."})
 	}
 	s := ws.Several
-	if s == nil {
+	if s == nil || ws.Drafted == nil {
 		return
 	}
 	t.blank()
@@ -578,7 +571,7 @@ func (t *terminal) steps(ws *dose.Worksheet) {
 			title += ", MODEL " + strings.ToUpper(modelName(d))
 		}
 		t.heading(title)
-		t.text(tableIndent, "t is the patient, m the model. Results are printed to 6 figures; a pocket calculator fed with them ends at the drafted dose to 3.")
+		t.text(tableIndent, stepsWords(ws))
 		seen := map[string]int{}
 		for k := range d.Steps {
 			t.step(k+1, &d.Steps[k], seen)

@@ -14,21 +14,41 @@ import "tayra/dose"
 func Wording() map[string]any {
 	return map[string]any{
 		"perKg": perKgWords, "perKgPair": perKgPair, "perKgRange": perKgRange, "dailyPair": dailyPair, "daily": dailyWords,
-		"amount": amountWords, "amountPair": amountPair, "amountRange": amountRange,
+		"amount": amountWords, "amountPair": amountPair, "amountRange": amountRange, "amountsOfPlans": planAmounts, "amountsByTemperature": temperatureAmounts,
 		"interval": intervalWords, "intervalBoth": intervalBothWords, "hours": hoursCell,
 		"asGiven": asGiven, "measured": measuredWords, "exact": exactWords, "count": countWord,
 
-		"order": orderWords, "give": giveWords, "massChoices": massChoices,
-		"strength": strengthWords, "perML": perMLWords, "dilution": dilutionWords, "roundingError": errorWords,
+		"order": orderWords, "give": giveWords, "massChoices": massChoices, "massEnds": massEnds,
+		"volume": volumeWords, "strength": strengthWords, "perML": perMLWords, "dilution": dilutionWords, "mixing": mixingWords, "roundingError": errorWords,
+		"outranked": outrankedWords, "published": publishedWords, "startLow": startLow, "bracket": bracketWords,
 
-		"animal": animalWords, "patientName": patientName, "mass": massWords, "drug": drugWords,
+		"animal": animalWords, "patientName": patientName, "mass": massWords, "massRange": massRange, "conditions": conditionWords, "drug": drugWords,
 		"draftedModel": draftedModel, "modelName": modelName, "model": modelWords, "typed": typedWords, "modelTyped": modelTyped,
 		"plan": planWords, "chosen": chosenWords, "average": averageWords,
 		"curveName": curveName, "relation": relationWords,
+		"basis": basisLabel, "basisUsed": basisUsed, "basesHold": basesHold, "verdict": verdictWords, "proposedCautions": proposedCautions, "steps": stepsWords,
 
 		"level": levelWord, "stop": stopWords, "activeStops": activeStops, "overridden": overridden,
 		"countCautions": countWords, "worst": worstWords, "cautionModels": cautionModels, "numbers": numberWords,
 		"verified": verifiedWords, "groupSources": groupSources,
+
+		// A template takes one value: these are the parts of one sentence or row.
+		"loading": func(ws *dose.Worksheet) [2]string {
+			order, about := loadingWords(ws)
+			return [2]string{order, about}
+		},
+		"amountRanges": func(d *dose.Drafted) [2]string {
+			even, ninety := amountRanges(d)
+			return [2]string{even, ninety}
+		},
+		"proposedAmounts": func(p *dose.Proposed, d *dose.Drafted) [3]string {
+			name, proposed, drafted := proposedAmounts(p, d)
+			return [3]string{name, proposed, drafted}
+		},
+		"modelAndSource": func(ws *dose.Worksheet, m *dose.ModelDraft) [2]string {
+			model, source := modelAndSource(ws, m)
+			return [2]string{model, source}
+		},
 
 		"paper": paperText, "formula": paperFormula,
 	}

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"regexp"
+	"slices"
 	"strings"
 	"sync"
 	"unicode"
@@ -67,16 +68,6 @@ func amountWords(v float64, unit string) string {
 		s += "/h"
 	}
 	return s
-}
-
-// amountPair says both ends of an amount, or the one amount.
-func amountPair(p dose.Pair, unit string) string {
-	return metabolic.FormatRange(p[0], p[1], func(v float64) string { return amountWords(v, unit) })
-}
-
-// amountRange says an interval about an amount.
-func amountRange(r dose.DoseRange, unit string) string {
-	return amountPair(dose.Pair{r.Low, r.High}, unit)
 }
 
 // intervalOf gives back the interval that a kind of regimen and its hours name.
@@ -178,36 +169,93 @@ func giveWords(p *dose.ProductRecord, unit string) string {
 	if p == nil {
 		return ""
 	}
-	strength := strengthWords(p, unit)
 	if n := len(p.Pump); n > 0 {
-		low, high := p.Pump[0], p.Pump[n-1]
-		if low.BelowStep || high.BelowStep {
+		low, high := &p.Pump[0], &p.Pump[n-1]
+		rate, of := dose.Pair{low.MLPerH, high.MLPerH}, strengthWords(p, unit)
+		held := dose.Pair{low.AmountPerHour, high.AmountPerHour}
+		switch {
+		case low.Dilution != nil && high.Dilution != nil && low.Dilution.Factor == high.Dilution.Factor:
+			a, b := low.Dilution, high.Dilution
+			rate, of, held = dose.Pair{a.DrawML, b.DrawML}, dilutedWords(a.Factor), dose.Pair{a.AmountGiven, b.AmountGiven}
+		case low.BelowStep || high.BelowStep:
 			return ""
 		}
-		rate := metabolic.FormatRange(low.MLPerH, high.MLPerH, func(v float64) string { return measuredWords(v, "mL/h") })
-		return rate + " of " + strength + " (" + amountPair(dose.Pair{low.AmountPerHour, high.AmountPerHour}, unit) + ")"
+		return measuredPair(rate, "mL/h") + " of " + of + " (" + amountPair(held, unit) + ")"
 	}
 	n := len(p.Ends)
 	if n == 0 {
 		return ""
 	}
-	low, high := p.Ends[0], p.Ends[n-1]
+	low, high := &p.Ends[0], &p.Ends[n-1]
 	switch {
 	case low.Dilution != nil && high.Dilution != nil && low.Dilution.Factor == high.Dilution.Factor:
-		a, b := low.Dilution, high.Dilution
-		volume := metabolic.FormatRange(a.DrawML, b.DrawML, func(v float64) string { return measuredWords(v, "mL") })
-		return volume + " of the product diluted " + dilutionWords(a.Factor) + " (" + amountPair(dose.Pair{a.AmountGiven, b.AmountGiven}, unit) + ")"
+		return volumeWords(p.Ends) + " (" + amountPair(dose.Pair{low.Dilution.AmountGiven, high.Dilution.AmountGiven}, unit) + ")"
 	case low.BelowStep || high.BelowStep:
 		return ""
 	}
-	measured := metabolic.FormatRange(low.Measured, high.Measured, func(v float64) string { return measuredWords(v, high.Measure) })
-	if low.Measure != "mL" { // "0.5 to 1.5 tablets": the word follows the larger
-		measured = metabolic.Significant(low.Measured, 7) + " to " + measuredWords(high.Measured, high.Measure)
-		if low.Measured == high.Measured {
-			measured = measuredWords(high.Measured, high.Measure)
-		}
+	return volumeWords(p.Ends) + " of " + strengthWords(p, unit) + " (" + amountPair(dose.Pair{low.AmountGiven, high.AmountGiven}, unit) + ")"
+}
+
+// measuredPair says both ends of what a device measured out. The word of
+// tablets follows the larger: "0.5 to 1.5 tablets".
+func measuredPair(p dose.Pair, measure string) string {
+	if p[0] == p[1] {
+		return measuredWords(p[1], measure)
 	}
-	return measured + " of " + strength + " (" + amountPair(dose.Pair{low.AmountGiven, high.AmountGiven}, unit) + ")"
+	number, _, _ := strings.Cut(measuredWords(p[0], measure), " ")
+	return number + " to " + measuredWords(p[1], measure)
+}
+
+// volumeWords says what a device measured out for a dose, both ends for a dose
+// range: "0.8 mL", "0.5 to 1.5 tablets", "0.15 mL of the product diluted 1 in
+// 200". Ends that are measured in two ways are said one by one.
+func volumeWords(ends []dose.Administration) string {
+	one := func(a *dose.Administration) string {
+		switch {
+		case a.Dilution != nil:
+			return measuredWords(a.Dilution.DrawML, "mL") + " of " + dilutedWords(a.Dilution.Factor)
+		case a.BelowStep && a.Measure != "mL":
+			return "less than the smallest part of a " + a.Measure
+		case a.BelowStep:
+			return "less than can be measured"
+		}
+		return measuredWords(a.Measured, a.Measure)
+	}
+	n := len(ends)
+	if n == 0 {
+		return ""
+	}
+	low, high := &ends[0], &ends[n-1]
+	switch {
+	case n == 1 || one(low) == one(high):
+		return one(high)
+	case !low.BelowStep && !high.BelowStep:
+		return measuredPair(dose.Pair{low.Measured, high.Measured}, high.Measure)
+	case low.Dilution != nil && high.Dilution != nil && low.Dilution.Factor == high.Dilution.Factor:
+		return measuredPair(dose.Pair{low.Dilution.DrawML, high.Dilution.DrawML}, "mL") + " of " + dilutedWords(low.Dilution.Factor)
+	}
+	return "low end " + one(low) + ", high end " + one(high)
+}
+
+func dilutedWords(factor float64) string { return "the product diluted " + dilutionWords(factor) }
+
+// mixingWords says how a dilution is made, a step each, and last what is drawn
+// from it or, perHour, set on the pump.
+func mixingWords(d *dose.Dilution, unit string, perHour bool) []string {
+	var out []string
+	of := "the product"
+	for i := range d.Steps {
+		x := &d.Steps[i]
+		out = append(out, fmt.Sprintf("Take %s of %s, add diluent %s: %s of %s. Label it.",
+			measuredWords(x.TakeML, "mL"), of, measuredWords(x.AddML, "mL"), measuredWords(x.TotalML, "mL"), perMLWords(x.AmountPerML, unit)))
+		of = "that"
+	}
+	do, measure, more := "Draw", "mL", ""
+	if perHour {
+		do, measure, more = "Set the pump to", "mL/h", " To fill a larger syringe or bag, keep the proportions."
+	}
+	return append(out, fmt.Sprintf("%s %s (exactly %s %s): %s, %s.%s", do, measuredWords(d.DrawML, measure),
+		metabolic.Significant(d.ExactML, 4), measure, amountWords(d.AmountGiven, unit), errorWords(d.ErrorPercent), more))
 }
 
 // dilutionWords says a dilution: "1 in 20".
@@ -230,8 +278,102 @@ func massChoices(ws *dose.Worksheet, low, high *dose.Pair, unit string) string {
 	if low == nil || high == nil {
 		return ""
 	}
-	mass := func(kg float64) string { return metabolic.FormatMass(metabolic.Mass(kg)) }
-	return fmt.Sprintf("%s if it weighs %s, %s if %s", amountPair(*low, unit), mass(ws.Patient.MassLowKg), amountPair(*high, unit), mass(ws.Patient.MassHighKg))
+	p := &ws.Patient
+	mass, amount := massesIn(massDigits, p.MassLowKg, p.MassHighKg), amountsIn(unit, *low, *high)
+	return fmt.Sprintf("%s if it weighs %s, %s if %s", amount(*low), mass(p.MassLowKg), amount(*high), mass(p.MassHighKg))
+}
+
+// massEnds says the draft at both ends of an estimated mass, a line each: "if
+// it weighs 1.2 kg: 7.81 mg, 6.51 mg/kg, 0.8 mL". There are none for a weighed
+// mass.
+func massEnds(ws *dose.Worksheet) []string {
+	d, p := ws.Drafted, &ws.Patient
+	if d == nil || d.AtLowMass == nil || d.AtHighMass == nil {
+		return nil
+	}
+	mass, amount := massesIn(massDigits, p.MassLowKg, p.MassHighKg), amountsIn(d.Unit, *d.AtLowMass, *d.AtHighMass)
+	end := func(kg float64, at dose.Pair, measured func(*dose.ProductRecord) []dose.Administration) string {
+		parts := []string{amount(at)}
+		if kg > 0 {
+			parts = append(parts, perKgPair(dose.Pair{at[0] / kg, at[1] / kg}, d.Unit))
+		}
+		if ws.Product != nil {
+			if v := volumeWords(measured(ws.Product)); v != "" {
+				parts = append(parts, v)
+			}
+		}
+		return "if it weighs " + mass(kg) + ": " + strings.Join(parts, ", ")
+	}
+	return []string{
+		end(p.MassLowKg, *d.AtLowMass, func(r *dose.ProductRecord) []dose.Administration { return r.AtLowMass }),
+		end(p.MassHighKg, *d.AtHighMass, func(r *dose.ProductRecord) []dose.Administration { return r.AtHighMass }),
+	}
+}
+
+// loadingWords says a loading dose: the order, with what to measure out, and
+// how far off it may be; the order is empty where none is drafted.
+func loadingWords(ws *dose.Worksheet) (order, about string) {
+	l := ws.Loading
+	if l == nil || l.DosePerKg == nil || l.PerAdministration == nil {
+		return "", ""
+	}
+	order = "Loading dose, once, first: " + amountPair(*l.PerAdministration, l.Unit) + " (" + perKgPair(*l.DosePerKg, l.Unit) + ")"
+	if v := volumeWords(l.Measured); v != "" {
+		order += " = " + v
+	}
+	order += "."
+	var parts []string
+	if r := l.Range90; r != nil {
+		s := "nine times in ten " + perKgRange(*r, l.Unit)
+		if l.Range90Amount != nil {
+			s += ", " + amountRange(*l.Range90Amount, l.Unit)
+		}
+		parts = append(parts, s)
+	}
+	if s := massChoices(ws, l.AtLowMass, l.AtHighMass, l.Unit); s != "" {
+		parts = append(parts, s)
+	}
+	if len(parts) > 0 {
+		about = capital(strings.Join(parts, "; ")) + "."
+	}
+	return order, about
+}
+
+// outrankedWords says that a dose is in print for this very species, each with
+// its source; empty where there is none, or no draft for it to outrank.
+func outrankedWords(ws *dose.Worksheet) string {
+	if ws.Drafted == nil || ws.Drafted.Outranked == "" {
+		return ""
+	}
+	var doses []string
+	for i := range ws.Published {
+		if p := &ws.Published[i]; p.Relation == "species" {
+			doses = append(doses, publishedWords(p)+" ("+p.Source+")")
+		}
+	}
+	if len(doses) == 0 {
+		return ws.Drafted.Outranked
+	}
+	return "A dose is published for this species, and outranks this draft: " + strings.Join(doses, "; ") + "."
+}
+
+// publishedWords says a dose in print: "4 mg/kg PO every 24 hours".
+func publishedWords(p *dose.PublishedDose) string {
+	s := asGiven(p.DoseTyped)
+	if p.DosePerKg != nil {
+		s = perKgPair(*p.DosePerKg, p.Unit)
+		if given := asGiven(p.DoseTyped); !isPerKg(p.DoseTyped) {
+			s = given + " (here " + s + ")"
+		}
+	}
+	if p.Route != "" {
+		s += " " + p.Route
+	}
+	kind := "once"
+	if strings.HasSuffix(p.Unit, "/h") {
+		kind = "infusion"
+	}
+	return s + " " + intervalWords(kind, p.IntervalH)
 }
 
 // animalWords says an animal by its common name, else by its scientific one.
@@ -271,7 +413,28 @@ func modelTyped(ws *dose.Worksheet, i int) string {
 
 // massWords says a mass as weighed or as estimated, with its ends.
 func massWords(middle, low, high float64) string {
-	return metabolic.FormatBodyMass(metabolic.BodyMass{Middle: metabolic.Mass(middle), Low: metabolic.Mass(low), High: metabolic.Mass(high)})
+	b := metabolic.BodyMass{Middle: metabolic.Mass(middle), Low: metabolic.Mass(low), High: metabolic.Mass(high)}
+	if !b.Estimated() {
+		return metabolic.FormatBodyMass(b)
+	}
+	mass := massesIn(estimateDigits, middle, low, high)
+	return mass(middle) + " (estimated, " + metabolic.FormatRange(low, high, mass) + ")"
+}
+
+// conditionWords says a patient's conditions as the clinic does: kidney disease
+// for renal. The record keeps the words of the case file.
+func conditionWords(conditions []string) []string {
+	out := make([]string, len(conditions))
+	for i, c := range conditions {
+		switch c {
+		case "renal":
+			c = "kidney disease"
+		case "hepatic":
+			c = "liver disease"
+		}
+		out[i] = c
+	}
+	return out
 }
 
 // modelName is the model of a draft by its common name.
@@ -306,6 +469,155 @@ func draftedModel(ws *dose.Worksheet) *dose.ModelDraft {
 		return nil
 	}
 	return &ws.Drafts[ws.DraftedFrom.Index]
+}
+
+// publishedAbove says, after a stop, that the model's dose stands among the
+// published ones: model and patient are of one species.
+func publishedAbove(ws *dose.Worksheet) bool {
+	for _, c := range activeStops(ws) {
+		if c.Slug == string(dose.SameSpecies) {
+			return true
+		}
+	}
+	return false
+}
+
+// modelAndSource says the model of a draft and where its dose is from. After a
+// stop its dose, too, is a number that one might give, and is left out.
+func modelAndSource(ws *dose.Worksheet, m *dose.ModelDraft) (model, source string) {
+	if ws.Drafted != nil {
+		return modelWords(m), m.Source
+	}
+	if publishedAbove(ws) {
+		return modelName(m), m.Source + ". Its dose stands above, as published"
+	}
+	return modelName(m), m.Source + ". After a stop its dose is not printed; it stands in the case"
+}
+
+// startLow says whether a single dose is to be begun at its low end. Where a
+// written reason has set aside that the effect does not follow clearance, the
+// low end of the two rules is no less arbitrary than the high one, and nothing
+// urges it.
+func startLow(ws *dose.Worksheet) bool {
+	for _, c := range overridden(ws) {
+		if c.Slug == string(dose.EffectDriven) {
+			return false
+		}
+	}
+	return true
+}
+
+// bracketWords is a remark of the record, without the call to start low where
+// nothing speaks for it.
+func bracketWords(ws *dose.Worksheet, remark string) string {
+	if startLow(ws) {
+		return remark
+	}
+	return strings.TrimSuffix(remark, "; start at the low end")
+}
+
+// basisLabel says a basis by its name, with the equation and the animal that
+// stands on another basis: "group (patient: measured)".
+func basisLabel(b *dose.BasisLine, id bool) string {
+	var about []string
+	if id && b.ID != "" {
+		about = append(about, b.ID)
+	}
+	if b.StandIn != "" {
+		about = append(about, b.StandIn)
+	}
+	if len(about) == 0 {
+		return b.Basis
+	}
+	return b.Basis + " (" + strings.Join(about, "; ") + ")"
+}
+
+// basisUsed says whether the draft follows from a basis. A dose from a line
+// fitted to data follows from none.
+func basisUsed(ws *dose.Worksheet, b *dose.BasisLine) bool { return b.Drafted && !fittedDraft(ws) }
+
+// fittedDraft says whether the dose comes from a line fitted to data.
+func fittedDraft(ws *dose.Worksheet) bool {
+	return ws.Drafted != nil && ws.Drafted.Plan == string(dose.PlanFitted)
+}
+
+// basesHold says which dose the lines under other bases hold.
+func basesHold(ws *dose.Worksheet) string {
+	m, d := draftedModel(ws), ws.Drafted
+	if m == nil || d == nil {
+		return ""
+	}
+	switch {
+	case m.Kind == "once":
+		return "The dose by clearance, d·S"
+	case fittedDraft(ws) && m.Kind == "infusion":
+		return "The rate per kg, by scaling"
+	case m.Kind == "infusion":
+		return "The rate per kg"
+	case fittedDraft(ws):
+		s := "The dose per kg " + intervalWords("", m.IntervalH) + ", at the model's interval, by scaling"
+		if m.IntervalH != nil && d.IntervalH != nil && *m.IntervalH != *d.IntervalH {
+			s += "; the ranges are of the drafted dose, " + intervalWords("", d.IntervalH)
+		}
+		return s
+	}
+	return "The dose per kg " + intervalWords("", d.IntervalH) + ", at the drafted interval"
+}
+
+// verdictWords are the sentences on a proposed regimen, but for those that its
+// cautions tell with their marks.
+func verdictWords(p *dose.Proposed) []string {
+	var out []string
+	for _, v := range p.Verdict {
+		told := false
+		for i := range p.Cautions {
+			told = told || strings.HasSuffix(v, ": "+p.Cautions[i].Text)
+		}
+		if !told {
+			out = append(out, v)
+		}
+	}
+	return out
+}
+
+// proposedCautions are what a proposed regimen raises of itself, stops first.
+func proposedCautions(p *dose.Proposed) []dose.Caution {
+	out := slices.Clone(p.Cautions)
+	slices.SortStableFunc(out, func(a, b dose.Caution) int { return levelRank(a.Level) - levelRank(b.Level) })
+	return out
+}
+
+func levelRank(l dose.Level) int {
+	switch l {
+	case dose.Stop:
+		return 0
+	case dose.Warn:
+		return 1
+	}
+	return 2
+}
+
+// proposedAmounts says what the proposed and the drafted regimen come to in this
+// patient, and what the two amounts are: each time, or per hour.
+func proposedAmounts(p *dose.Proposed, d *dose.Drafted) (amount, proposed, drafted string) {
+	amount = "amount each time"
+	if _, perHour := unitOf(p.Unit); perHour {
+		amount = "amount per hour"
+	}
+	if p.Unit != d.Unit { // an infusion against single doses: nothing is side by side
+		return amount, amountPair(p.PerAdministration, p.Unit), amountPair(d.PerAdministration, d.Unit)
+	}
+	say := amountsIn(p.Unit, p.PerAdministration, d.PerAdministration)
+	return amount, say(p.PerAdministration), say(d.PerAdministration)
+}
+
+// stepsWords introduces the steps.
+func stepsWords(ws *dose.Worksheet) string {
+	s := "t is the patient, m the model. Results are printed to 6 figures"
+	if ws.Drafted == nil {
+		return s + ". After a stop the reckoning ends at the ratios."
+	}
+	return s + "; a pocket calculator fed with them ends at the drafted dose to 3 figures."
 }
 
 // planWords says the name of a plan.
@@ -376,6 +688,9 @@ func stopWords(c *dose.Caution) string {
 	case dose.EffectDriven:
 		return "a potent immobiliser: its dose does not follow metabolic rate"
 	case dose.BelowStep:
+		if _, pieces := c.Numbers["step_pieces"]; pieces {
+			return "the dose is less than the smallest part of a tablet"
+		}
 		return "the volume is too small for the device"
 	}
 	if strings.HasPrefix(c.Slug, string(dose.HazardOnFile)) {

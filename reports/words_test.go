@@ -22,7 +22,7 @@ func TestDoseWords(t *testing.T) {
 		{dailyPair(&dose.Pair{9.32, 9.32}, "mg/kg/h"), "9.32 mg/kg/day"},
 		{dailyPair(nil, "mg/kg"), ""},
 		{amountPair(dose.Pair{333.7, 333.7}, "mg/kg"), "334 mg"},
-		{amountPair(dose.Pair{0.75, 1.5}, "mg/kg"), "750 mcg to 1.5 mg"},
+		{amountPair(dose.Pair{0.75, 1.5}, "mg/kg"), "0.75 to 1.5 mg"},
 		{amountPair(dose.Pair{4.271, 4.271}, "mg/kg/h"), "4.27 mg/h"},
 		{amountPair(dose.Pair{10390985, 10390985}, "IU/kg"), "10,400,000 units"},
 		{intervalWords("clock", hours(72)), "every 72 hours (3 days)"},
@@ -82,6 +82,8 @@ func TestGiveWords(t *testing.T) {
 		{"one end below the step", &dose.ProductRecord{AmountPerML: 5, Ends: []dose.Administration{small, end(1, 0.2, 1)}}, "mg/kg", ""},
 		{"pump", &dose.ProductRecord{AmountPerML: 1, Pump: []dose.Pump{{MLPerH: 4.3, AmountPerHour: 4.3}}}, "mg/kg/h", "4.3 mL/h of 1 mg/mL (4.3 mg/h)"},
 		{"pump below its step", &dose.ProductRecord{AmountPerML: 1, Pump: []dose.Pump{{BelowStep: true}}}, "mg/kg/h", ""},
+		{"pump, diluted", &dose.ProductRecord{AmountPerML: 1, Pump: []dose.Pump{{BelowStep: true, Dilution: &dose.Dilution{Factor: 1000, DrawML: 1.5, AmountGiven: 0.0015}}}}, "mg/kg/h",
+			"1.5 mL/h of the product diluted 1 in 1,000 (1.5 mcg/h)"},
 	} {
 		if got := giveWords(k.p, k.unit); got != k.want {
 			t.Errorf("%s: %q, want %q", k.name, got, k.want)

@@ -1,6 +1,7 @@
 package dose
 
 import (
+	"slices"
 	"strings"
 
 	"tayra/species"
@@ -90,7 +91,7 @@ func (t *drugTraits) effectDriven(d *Drug) {
 	}
 	if len(what) == 0 {
 		for _, w := range effectDrivenWords {
-			if containsAny(text, []string{w.word}) {
+			if containsWord(text, w.word) {
 				what = append(what, w.what)
 				break
 			}
@@ -110,24 +111,26 @@ var antibioticWords = []string{
 }
 
 // joinedWords is a text in small letters without hyphens and spaces.
-func joinedWords(text string) string {
-	return strings.NewReplacer("-", "", " ", "", "\u00a0", "", "\u2010", "", "\u2011", "").Replace(strings.ToLower(text))
+func joinedWords(text string) string { return joiner.Replace(strings.ToLower(text)) }
+
+var joiner = strings.NewReplacer("-", "", " ", "", "\u00a0", "", "\u2010", "", "\u2011", "")
+
+// containsAny says whether the text holds one of the words.
+func containsAny(text string, words []string) bool {
+	return slices.ContainsFunc(words, func(w string) bool { return containsWord(text, w) })
 }
 
-// containsAny says whether the text holds one of the words, but for one that
-// it denies ("non-opioid").
-func containsAny(text string, words []string) bool {
-	for _, w := range words {
-		for rest := text; ; {
-			i := strings.Index(rest, w)
-			if i < 0 {
-				break
-			}
-			if !strings.HasSuffix(rest[:i], "non") {
-				return true
-			}
-			rest = rest[i+len(w):]
+// containsWord says whether the text holds a word, but for one that it denies
+// ("non-opioid").
+func containsWord(text, word string) bool {
+	for {
+		i := strings.Index(text, word)
+		if i < 0 {
+			return false
 		}
+		if !strings.HasSuffix(text[:i], "non") {
+			return true
+		}
+		text = text[i+len(word):]
 	}
-	return false
 }

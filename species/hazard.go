@@ -40,6 +40,7 @@ type Hazard struct {
 	Regulatory bool
 
 	class, order, family string // where the taxon stands
+	speciesWords         string // the first two words of the taxon
 	operatorToo          bool   // an animal's hazard of which the handler is warned as well
 }
 
@@ -77,6 +78,7 @@ func readHazards() *hazardBook {
 			Condition: c[14], ConditionKind: c[15], Operator: c[16] == "only", operatorToo: c[16] == "also", Regulatory: c[17] == "yes",
 			Citation: c[18], Verified: c[19],
 		}
+		h.speciesWords = (&Animal{Name: h.Taxon}).SpeciesWords()
 		i := len(b.rows)
 		b.rows = append(b.rows, h)
 		if h.Drug == "" {

@@ -65,11 +65,14 @@ func MatchHazards(drug, class string, a *Animal, route string) []HazardMatch {
 		if !given.admits(h.Route) {
 			continue
 		}
-		m := HazardMatch{Hazard: *h, Via: c.via, Meant: c.meant}
-		m.Relation, m.RelativeRank = relationOf(h, a)
-		switch {
-		case c.sister != "" && (m.Relation != "direct" || h.Regulatory || h.Operator):
+		// Most rows concern another animal: they are told from the rest before
+		// anything is copied.
+		relation, rank := relationOf(h, a)
+		if relation == "" && !h.operatorToo || c.sister != "" && (relation != "direct" || h.Regulatory || h.Operator) {
 			continue
+		}
+		m := HazardMatch{Hazard: *h, Relation: relation, RelativeRank: rank, Via: c.via, Meant: c.meant}
+		switch {
 		case c.sister != "":
 			m.Relation, m.RelativeRank, m.Sister = "relative", "drug class", c.sister
 		case h.operatorToo && m.Relation != "direct":
@@ -77,9 +80,7 @@ func MatchHazards(drug, class string, a *Animal, route string) []HazardMatch {
 		case m.Relation == "relative" && !h.Regulatory:
 			m.Condition, m.ConditionKind = "", "" // a relative is no adult turkey
 		}
-		if m.Relation != "" {
-			out = append(out, m)
-		}
+		out = append(out, m)
 	}
 	out = dropSisters(out)
 	slices.SortStableFunc(out, compareMatches)
@@ -146,7 +147,7 @@ func relationOf(h *Hazard, a *Animal) (relation, rank string) {
 	case "any":
 		direct = true
 	case "species":
-		direct = sameSpeciesWords(a.SpeciesWords(), firstTwoWords(h.Taxon))
+		direct = sameSpeciesWords(a.SpeciesWords(), h.speciesWords)
 	case "genus":
 		direct = a.Genus() == h.Taxon
 	case "family":
@@ -172,8 +173,6 @@ func relationOf(h *Hazard, a *Animal) (relation, rank string) {
 	}
 	return "", ""
 }
-
-func firstTwoWords(name string) string { return (&Animal{Name: name}).SpeciesWords() }
 
 // candidate is a row that a drug's name or class leads to.
 type candidate struct {

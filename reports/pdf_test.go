@@ -261,9 +261,7 @@ func TestPDFFirstPage(t *testing.T) {
 		if d := e.ws.Drafted; d != nil {
 			want = append(want, orderWords(e.ws), giveWords(e.ws.Product, d.Unit), perKgPair(d.DosePerKg, d.Unit), perKgRange(d.Range50, d.Unit), perKgRange(d.Range90, d.Unit),
 				amountRange(d.Range90Amount, d.Unit), "Worst caution: "+levelWord(e.ws.Cautions[0].Level), outrankedWords(e.ws), d.Disagreement)
-			for _, end := range massEnds(e.ws) {
-				want = append(want, capital(end))
-			}
+			want = append(want, massEnds(e.ws)...)
 			order, about := loadingWords(e.ws)
 			want = append(want, order, about)
 			if m := e.ws.Drafts[e.ws.DraftedFrom.Index]; m.VolumeRange90 != nil {

@@ -39,7 +39,7 @@ func (s *sheet) draftBox() {
 			}
 		}
 		for _, x := range massEnds(ws) {
-			f.paragraph(paraStyle{gap: 1}, plain(capital(x)+"."))
+			f.paragraph(paraStyle{gap: 1}, plain(x))
 		}
 		if d.Plan == string(dose.PlanOnce) {
 			runs := []run{plain("The two ends follow two rules: by clearance it matches the model's area under the curve, by volume its peak. No interval is drafted.")}

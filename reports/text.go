@@ -163,7 +163,7 @@ func (t *terminal) draftBox(ws *dose.Worksheet) {
 		}
 	}
 	for _, x := range massEnds(ws) {
-		t.text(0, capital(x)+".")
+		t.text(0, x)
 	}
 	if d.Plan == "once" {
 		s := "A bracket of two rules, by volume and by clearance"

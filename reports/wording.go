@@ -50,7 +50,7 @@ func Wording() map[string]any {
 			return [2]string{model, source}
 		},
 
-		"paper": paperText, "formula": paperFormula,
+		"capital": capital, "paper": paperText, "formula": paperFormula,
 	}
 }
 

@@ -283,8 +283,8 @@ func massChoices(ws *dose.Worksheet, low, high *dose.Pair, unit string) string {
 	return fmt.Sprintf("%s if it weighs %s, %s if %s", amount(*low), mass(p.MassLowKg), amount(*high), mass(p.MassHighKg))
 }
 
-// massEnds says the draft at both ends of an estimated mass, a line each: "if
-// it weighs 1.2 kg: 7.81 mg, 6.51 mg/kg, 0.8 mL". There are none for a weighed
+// massEnds says the draft at both ends of an estimated mass, a sentence each:
+// "If it weighs 1.2 kg: 7.81 mg, 6.51 mg/kg, 0.8 mL." There are none for a weighed
 // mass.
 func massEnds(ws *dose.Worksheet) []string {
 	d, p := ws.Drafted, &ws.Patient
@@ -302,7 +302,7 @@ func massEnds(ws *dose.Worksheet) []string {
 				parts = append(parts, v)
 			}
 		}
-		return "if it weighs " + mass(kg) + ": " + strings.Join(parts, ", ")
+		return "If it weighs " + mass(kg) + ": " + strings.Join(parts, ", ") + "."
 	}
 	return []string{
 		end(p.MassLowKg, *d.AtLowMass, func(r *dose.ProductRecord) []dose.Administration { return r.AtLowMass }),

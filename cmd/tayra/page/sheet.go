@@ -4,7 +4,6 @@ import (
 	"html/template"
 	"maps"
 	"regexp"
-	"slices"
 	"strconv"
 	"strings"
 	"sync"
@@ -75,12 +74,12 @@ func (v *sheet) About() string {
 	if p.Stage != "" {
 		parts = append(parts, p.Stage)
 	}
-	parts = append(parts, p.Condition...)
+	parts = append(parts, wording[func([]string) []string]("conditions")(p.Condition)...)
 	if p.TemperatureC != nil {
 		parts = append(parts, "body "+metabolic.FormatCelsius(metabolic.Celsius(*p.TemperatureC)))
 	}
 	if a := p.AdultMassKg; a != nil {
-		parts = append(parts, "adults weigh "+metabolic.FormatRange(a[0], a[1], massOf))
+		parts = append(parts, "adults weigh "+wording[func(low, high float64) string]("massRange")(a[0], a[1]))
 	}
 	switch p.FoodProducing {
 	case "true":
@@ -156,24 +155,35 @@ func (v *sheet) Relative() string {
 	if len(v.Curves) == 0 || !strings.Contains(v.Curves[0].Unit, "times") {
 		return ""
 	}
-	return "Peak, trough and average in " + strings.TrimPrefix(v.Curves[0].Unit, "times ") + "s of 1."
+	return "Concentrations are given as " + v.Curves[0].Unit + "."
 }
 
-// Verdict is what a proposed regimen comes to. The cautions that it raises follow
-// with their marks, and are not told twice.
-func (v *sheet) Verdict() []string {
-	return slices.DeleteFunc(slices.Clone(v.Proposed.Verdict), func(s string) bool {
-		return strings.HasPrefix(s, "It raises") && len(v.Proposed.Cautions) > 0
-	})
-}
+// Infusion says whether the draft runs on a pump.
+func (v *sheet) Infusion() bool { return v.Model != nil && v.Model.Kind == "infusion" }
 
-// PublishedInterval is the interval of a dose in print as words.
-func (v *sheet) PublishedInterval(p *dose.PublishedDose) string {
-	kind := "once"
-	if strings.Contains(p.Unit, "/h") {
-		kind = "infusion"
+// PlanAmounts are the amounts of the model's plans, in one unit.
+func (v *sheet) PlanAmounts() []string {
+	say := wording[func(*dose.ModelDraft) func(dose.Pair) string]("amountsOfPlans")(v.Model)
+	var out []string
+	for i := range v.Model.Plans {
+		out = append(out, say(v.Model.Plans[i].PerAdministration))
 	}
-	return wording[func(string, *float64) string]("interval")(kind, p.IntervalH)
+	return out
+}
+
+// TemperatureAmounts are the amounts at other body temperatures, in one unit.
+func (v *sheet) TemperatureAmounts() []string {
+	say := wording[func([]dose.TemperatureLine, string) func(dose.Pair) string]("amountsByTemperature")(v.Temperature, v.Unit())
+	var out []string
+	for i := range v.Temperature {
+		out = append(out, say(v.Temperature[i].Amount))
+	}
+	return out
+}
+
+// Daily says two daily amounts per kg as a range; unit is that of the dose.
+func (v *sheet) Daily(low, high float64, unit string) string {
+	return wording[func(*dose.Pair, string) string]("dailyPair")(&dose.Pair{low, high}, unit)
 }
 
 func massOf(kg float64) string { return metabolic.FormatMass(metabolic.Mass(kg)) }

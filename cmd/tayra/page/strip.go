@@ -24,7 +24,7 @@ type stripLine struct {
 	Name     string
 	Specific string
 	Dose     string
-	Drafted  bool
+	Drafted  bool   // the basis that the draft uses
 	Range    string // even | ninety for the two ranges, else ""
 	From, To string
 
@@ -40,11 +40,15 @@ func newStrip(v *sheet) *strip {
 	if m == nil || len(v.Bases)+len(v.Unavailable) == 0 {
 		return nil
 	}
-	s := &strip{Head: stripHead(v)}
+	s := &strip{}
+	if v.Drafted != nil {
+		s.Head = wording[func(*dose.Worksheet) string]("basesHold")(v.Worksheet) + ". S is the ratio of rates per kg."
+	}
 	perKg := func(p dose.Pair) string { return wording[func(dose.Pair, string) string]("perKgPair")(p, m.Unit) }
 	for i := range v.Bases {
 		b := &v.Bases[i]
-		l := stripLine{Name: b.Basis, Specific: metabolic.FormatRatio(b.Specific), Drafted: b.Drafted}
+		l := stripLine{Name: wording[func(*dose.BasisLine, bool) string]("basis")(b, false), Specific: metabolic.FormatRatio(b.Specific),
+			Drafted: wording[func(*dose.Worksheet, *dose.BasisLine) bool]("basisUsed")(v.Worksheet, b)}
 		if b.DosePerKg != nil {
 			l.Dose, l.low, l.high = perKg(*b.DosePerKg), b.DosePerKg[0], b.DosePerKg[1]
 		}
@@ -56,40 +60,15 @@ func newStrip(v *sheet) *strip {
 			Dose: perKg(e.DosePerKg), low: e.DosePerKg[0], high: e.DosePerKg[1]})
 	}
 	if d := v.Drafted; d != nil {
-		f := carried(v)
 		for _, r := range []struct {
 			name, mark string
 			of         dose.DoseRange
 		}{{"as likely as not", "even", d.Range50}, {"nine in ten", "ninety", d.Range90}} {
-			low, high := r.of.Low*f, r.of.High*f
-			s.Lines = append(s.Lines, stripLine{Name: r.name, Range: r.mark, Dose: perKg(dose.Pair{low, high}), low: low, high: high})
+			s.Lines = append(s.Lines, stripLine{Name: r.name, Range: r.mark, Dose: perKg(dose.Pair{r.of.Low, r.of.High}), low: r.of.Low, high: r.of.High})
 		}
 	}
 	s.place()
 	return s
-}
-
-// carried brings a dose at the drafted interval to the model's, at which the
-// lines stand: the ranges are about the daily amount.
-func carried(v *sheet) float64 {
-	if v.Drafted == nil || v.Model.IntervalH == nil || v.Drafted.IntervalH == nil {
-		return 1
-	}
-	return *v.Model.IntervalH / *v.Drafted.IntervalH
-}
-
-func stripHead(v *sheet) string {
-	head := "The dose per kg " + wording[func(string, *float64) string]("interval")(v.Model.Kind, v.Model.IntervalH) + ", as the model is given it"
-	switch v.Model.Kind {
-	case "once":
-		head = "The dose by clearance, d·S"
-	case "infusion":
-		head = "The rate per kg"
-	}
-	if math.Abs(carried(v)-1) > 1e-9 {
-		head += "; the two ranges are carried to that interval by the daily amount"
-	}
-	return head + ". S is the ratio of rates per kg."
 }
 
 // place finds where each line stands on the axis, and the numbers on it.

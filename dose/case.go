@@ -122,6 +122,7 @@ type Drug struct {
 	Extraction         Extraction
 	Activity           Activity
 	Depot              bool
+	FormSaid           bool    // the case says whether it is a depot
 	ProteinBinding     float64 // fraction bound; only with HasBinding
 	HasBinding         bool
 	ActiveSecretion    Answer

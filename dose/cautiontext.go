@@ -67,6 +67,9 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 		*t = fmt.Sprintf("The organ that clears the drug is diseased (%s disease, %s elimination): clearance may be far below the one scaled.", r.detail, eliminationName(c.Drug.Elimination))
 	case DepotForm:
 		*t = "A depot or long-acting form: its absorption, not the animal's clearance, sets the interval. No interval is scaled."
+		if r.detail != "" {
+			*t = "The drug's name speaks of a depot or long-acting form (" + r.detail + "), whose absorption, not the animal's clearance, sets the interval: none is scaled for such. Write formulation in the case: depot, or solution if it is none."
+		}
 	case AboveTolerated:
 		tol := c.Models[r.model].Tolerated
 		if n.stopped { // the number that a stop holds back is not told by the stop

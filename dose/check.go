@@ -266,7 +266,7 @@ func (k *checker) drug(in *CaseInput, c *Case) {
 	c.Drug.Elimination = word(k, d.Elimination, "drug.elimination", eliminationWords)
 	c.Drug.Extraction = word(k, d.Extraction, "drug.extraction", extractionWords)
 	c.Drug.Activity = word(k, d.Activity, "drug.activity", activityWords)
-	c.Drug.Depot = word(k, d.Formulation, "drug.formulation", formWords)
+	c.Drug.Depot, c.Drug.FormSaid = word(k, d.Formulation, "drug.formulation", formWords), d.Formulation.Given()
 	c.Drug.ProteinBinding, c.Drug.HasBinding = read(k, d.ProteinBinding, "drug.protein_binding", metabolic.ParseFraction)
 	c.Drug.ActiveSecretion = word(k, d.ActiveSecretion, "drug.active_secretion", answerWords)
 	c.Drug.Recycling = word(k, d.EnterohepaticRecycling, "drug.enterohepatic_recycling", answerWords)

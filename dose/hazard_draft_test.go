@@ -331,6 +331,9 @@ func TestCarelessDrafts(t *testing.T) {
 		{"samplazole", "thebaine derivative", "impala", "dart", "effect-driven", Stop, "Potent immobiliser"},
 		{"samplazole", "Ultra potent opiates", "impala", "dart", "effect-driven", Stop, "Potent immobiliser"},
 		{"samplazole", "immobilising agent", "impala", "dart", "effect-driven", Stop, "Potent immobiliser"},
+		// A depot form that only its name tells.
+		{"oxytetracycline LA", "", "lion", "IM", "depot", Stop, "speaks of a depot or long-acting form (la)"},
+		{"benzathine benzylpenicillin", "", "lion", "IM", "depot", Stop, "Write formulation in the case"},
 		// Controlled drugs are asked about.
 		{"ketamine", "", "lion", "IM", "controlled", Warn, "Is this one controlled where you work?"},
 		{"pentobarbitone", "", "lion", "IV", "controlled", Warn, "Is this one controlled where you work?"},
@@ -405,6 +408,15 @@ func TestHazardAnswers(t *testing.T) {
 		c := has(draftOf(t, in), "hazard-h084")
 		if (c != nil) != (k.level != "") || c != nil && c.Level != k.level {
 			t.Errorf("%s, food-producing %q: %+v, want %s", k.animal, k.food, c, k.level)
+		}
+	}
+	for form, stops := range map[string]bool{"": true, "depot": true, "solution": false} {
+		in := hazardCase(t, "oxytetracycline LA", "", "lion", "IM")
+		if form != "" {
+			in.Drug.Formulation = E(form)
+		}
+		if c := has(draftOf(t, in), "depot"); (c != nil) != stops {
+			t.Errorf("formulation %q: %+v", form, c)
 		}
 	}
 	for answer, says := range map[string]string{"": "Is this one controlled", "true": "A controlled drug", "false": ""} {

@@ -359,9 +359,6 @@ func raiseDrug(c *Case, n *numbers, add adder) {
 	if d.Margin == Narrow {
 		add(NarrowMargin, Stop, -1)
 	}
-	if d.Depot {
-		add(DepotForm, Stop, -1)
-	}
 	traits := n.recall.drug
 	if traits == nil {
 		traits = traitsOf(d)
@@ -372,6 +369,12 @@ func raiseDrug(c *Case, n *numbers, add adder) {
 		add(DrugNotRecognised, Warn, -1)
 	case len(traits.reading.Unread) > 0:
 		add(DrugNotRecognised, Note, -1)
+	}
+	switch {
+	case d.Depot:
+		add(DepotForm, Stop, -1)
+	case traits.reading.LongActing != "" && !d.FormSaid:
+		add(DepotForm, Stop, -1).detail = traits.reading.LongActing
 	}
 	switch {
 	case d.Controlled == Yes:

@@ -5,6 +5,8 @@ import (
 	"slices"
 	"strings"
 	"sync"
+
+	"tayra/species/internal/fold"
 )
 
 //go:embed data/drug-class-traits.csv
@@ -46,6 +48,9 @@ type DrugReading struct {
 	// brand name is one.
 	Unread []string
 	Near   []string // names that an unread part is near to
+	// LongActing is the word of the name that says that the form is a depot
+	// ("LA", "benzathine"), or "".
+	LongActing string
 }
 
 // Named reports whether anything of the name itself was read.
@@ -71,8 +76,8 @@ func (r *DrugReading) Has(t Trait) (DrugTrait, bool) {
 // within two slips or by ear. The result is shared: it is not to be changed.
 func ReadDrug(drug, class string) *DrugReading { return remember(drug, class).reading }
 
-func newReading(read []reading, unread []string) *DrugReading {
-	out := &DrugReading{Unread: unread}
+func newReading(drug string, read []reading, unread []string) *DrugReading {
+	out := &DrugReading{Unread: unread, LongActing: longActing(drug)}
 	put := func(list *[]string, s string) {
 		if s != "" && !slices.Contains(*list, s) {
 			*list = append(*list, s)
@@ -97,6 +102,25 @@ func newReading(read []reading, unread []string) *DrugReading {
 		}
 	}
 	return out
+}
+
+// longActingWords are words in the name of a depot or slow form: of how it
+// releases the drug, and salts and esters made to dissolve slowly. From memory.
+var longActingWords = setOf(`la depot longacting slowrelease sustainedrelease extendedrelease prolongedrelease controlledrelease modifiedrelease
+	sr er xr xl cr mr implant implants microspheres benzathine decanoate enanthate enantate undecylenate undecanoate cypionate cipionate caproate
+	ccfa crystallinefreeacid repository`)
+
+// longActing finds such a word.
+func longActing(drug string) string {
+	tokens := fold.Tokens(drug)
+	for i := range tokens {
+		for n := 1; n <= 3 && i+n <= len(tokens); n++ {
+			if longActingWords[strings.Join(tokens[i:i+n], "")] && !slices.Contains(tokens[i:i+n], fold.Boundary) {
+				return strings.Join(tokens[i:i+n], " ")
+			}
+		}
+	}
+	return ""
 }
 
 var traitsOfClass = sync.OnceValue(func() map[string][]DrugTrait {

@@ -92,6 +92,20 @@ func TestReadDrugUnread(t *testing.T) {
 	}
 }
 
+// A long-acting form is known by the words of its name.
+func TestLongActing(t *testing.T) {
+	for name, want := range map[string]string{
+		"oxytetracycline LA": "la", "Oxytetracycline L.A.": "l a", "examplicillin long-acting": "long acting", "benzathine benzylpenicillin": "benzathine",
+		"haloperidol decanoate": "decanoate", "morphine SR": "sr", "morphine slow-release": "slow release", "deslorelin implant": "implant",
+		"ceftiofur crystalline free acid": "crystalline free acid", "testosterone cypionate": "cypionate", "pyrantel pamoate": "",
+		"examplicillin": "", "lasalocid": "", "amoxicillin trihydrate": "", "": "",
+	} {
+		if got := ReadDrug(name, "").LongActing; got != want {
+			t.Errorf("%q: %q, want %q", name, got, want)
+		}
+	}
+}
+
 // The table of traits speaks of classes that a name leads to, and every drug
 // of such a class has the trait.
 func TestDrugClassTraits(t *testing.T) {

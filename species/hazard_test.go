@@ -629,6 +629,6 @@ func BenchmarkReadDrug(b *testing.B) {
 	for b.Loop() {
 		read, unread := readDrug("examplicillin", "penicillin")
 		findCandidates(read)
-		newReading(read, unread)
+		newReading("examplicillin", read, unread)
 	}
 }

@@ -210,7 +210,7 @@ func remember(drug, class string) *drugFound {
 		return found
 	}
 	read, unread := readDrug(drug, class)
-	found = &drugFound{findCandidates(read), newReading(read, unread)}
+	found = &drugFound{findCandidates(read), newReading(drug, read, unread)}
 	if len(drug)+len(class) <= rememberLongest {
 		remembered.Lock()
 		if remembered.found == nil || len(remembered.found) >= rememberAtMost {

@@ -271,7 +271,7 @@ func suitability(c *Case, from int) []Criterion {
 		add("very large animal", speaksAgainst, "Scaling has been called unreliable at the mass of elephants and whales.", "Bechert & Christensen 2007 J Zoo Wildl Med", "read: abstract")
 	}
 	if c.Patient.Stage != Adult {
-		add("age", speaksAgainst, "Young: clearance follows maturity, not mass. That of enrofloxacin was 104 mL/h/kg in week-old foals and about 357 in mares.", "Am J Vet Res 2000;61:706; Haines 2000 (357 computed)", "read: abstracts")
+		add("age", speaksAgainst, "Young: clearance follows maturity, not mass. That of enrofloxacin, per kg, was 3.4 times as high in mares as in week-old foals.", "Am J Vet Res 2000;61:706; Haines 2000 (357 computed)", "read: abstracts")
 	}
 	if a.Bird() && (c.Drug.Elimination == Renal || c.Drug.Elimination == Mixed) {
 		add("kidney of birds", speaksAgainst, "Filtration in birds follows arterial pressure, so that shock or dehydration moves a renal clearance.", "Hunter 2010 Handb Exp Pharmacol 199 p. 148", "read")

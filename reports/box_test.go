@@ -42,7 +42,7 @@ func TestBox(t *testing.T) {
 		{"outranked", []string{
 			"A dose is published for this species, and outranks this draft: 0.8 to 1 mg/kg SC every 12 hours (small-mammal notes 3, invented for this example).",
 			"If it weighs 0.8 kg: 447 mcg, 0.559 mg/kg, 0.2 mL.", "If it weighs 1.2 kg: 606 mcg, 0.505 mg/kg, 0.3 mL.",
-			"Loading dose, once, first: 980 mcg (1 mg/kg) = 0.5 mL.", "0.8 mg if it weighs 0.8 kg, 1.2 mg if 1.2 kg."}},
+			"Loading dose, once, first: 980 mcg (1 mg/kg) = 0.5 mL, divided over 2 sites.", "0.8 mg if it weighs 0.8 kg, 1.2 mg if 1.2 kg."}},
 		{"python", []string{"The bases disagree: the dose at the drafted interval is 6.28 mg/kg by group", "If it weighs 1.2 kg: 7.81 mg, 6.51 mg/kg, 0.8 mL.", "If it weighs 1.6 kg: 9.7 mg, 6.06 mg/kg, 0.95 mL.", "0.774 to 97.9 mg"}},
 		{"pump", []string{"= 1.5 mL/h of the product diluted 1 in 1,000 (1.5 mcg/h)", "If it weighs 1.1 kg: 1.36 mcg/h, 0.00124 mg/kg/h."}},
 		{"range", []string{"Loading dose, once, first: 28 mg (20 mg/kg) = 0.56 mL.", "ine times in ten 3.27 to 122 mg/kg, 4.58 to 171 mg."}},

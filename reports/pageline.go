@@ -42,9 +42,10 @@ type token struct {
 type bond int
 
 const (
-	loose bond = iota // a line may end between them
-	held              // an operator and what it works on, "to" and its number
-	tight             // a number and its unit
+	loose  bond = iota // a line may end between them
+	paired             // the low end of a range and "to"
+	held               // an operator and what it works on, "to" and its number
+	tight              // a number and its unit
 )
 
 type piece struct {
@@ -60,8 +61,9 @@ type piece struct {
 //     ("10 mg/kg", "± 5 %", "to 18.9", "every 12 hours");
 //   - an operator ("=", "×") never ends a line, so a long formula turns over
 //     before it;
-//   - where that does not fit, the operator is let go first and the unit last;
-//     a word wider than the whole line is broken hard, at best after a mark
+//   - both ends of a range share a line ("3.27 to 122 mg/kg");
+//   - where that does not fit, the range is let go first, then the operator,
+//     and the unit last; a word wider than the whole line is broken hard, at best after a mark
 //     such as / or -.
 //
 // All other spaces (no-break, thin, figure) hold what they join.
@@ -103,13 +105,16 @@ func (b *breaker) split(runs []run) {
 			at = end
 		}
 	}
-	previous := ""
+	previous, figure := "", false // and whether the word before previous ends in a figure
 	for i := range b.tokens {
 		word := b.word(runs, b.tokens[i])
 		if i > 0 {
 			b.tokens[i].bond = bondBetween(previous, word)
 		}
-		previous = word
+		if figure && previous == "to" && startsWithFigure(word) {
+			b.tokens[i-1].bond = paired
+		}
+		previous, figure = word, endsInFigure(previous)
 	}
 }
 
@@ -155,7 +160,7 @@ func (b *breaker) wrap(runs []run, width int) []textLine {
 	w := wrapping{runs: runs, width: width, lines: make([]textLine, 0, 1)}
 	for i := 0; i < len(b.tokens); {
 		end, chunk := i, 0
-		for firm := held; firm <= tight+1; firm++ {
+		for firm := paired; firm <= tight+1; firm++ {
 			if end, chunk = b.chunk(i, firm); chunk <= width {
 				break
 			}

@@ -85,6 +85,8 @@ func TestWrap(t *testing.T) {
 		{"across weights", []run{plain("give "), bold("10"), plain(" mg/kg")}, em("give 10 mg"), []string{"give", "10 mg/kg"}},
 		{"operator begins the line", []run{plain("70 × 2.5 = 175")}, em("70 × 2.5 ="), []string{"70 × 2.5", "= 175"}},
 		{"range", []run{plain("3.5 to 18.9 mg/kg")}, em("3.5 to 18.9 mg"), []string{"3.5", "to 18.9 mg/kg"}},
+		{"a range goes together", []run{plain("somewhere 3.5 to 18.9 mg/kg")}, em("somewhere 3.5 to 18.9"), []string{"somewhere", "3.5 to 18.9 mg/kg"}},
+		{"no range", []run{plain("within reach to 18.9 mg/kg")}, em("within reach to"), []string{"within reach", "to 18.9 mg/kg"}},
 		{"range in a narrow column", []run{plain("3.5 to 18.9 mg/kg")}, em("18.9 mg/kg"), []string{"3.5 to", "18.9 mg/kg"}},
 		{"no-break space", []run{plain("a\u00a0b\u202fc\u2009d ee")}, em("a\u00a0b\u202fc\u2009d"), []string{"a\u00a0b\u202fc\u2009d", "ee"}},
 		{"spaces kept inside, dropped at the turn", []run{plain("  a  b    c ")}, em("a  b"), []string{"a  b", "c"}},

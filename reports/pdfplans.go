@@ -92,8 +92,8 @@ func (s *sheet) plans() {
 	s.table(t)
 	f.keepNext()
 	r := &m.Ratios
-	f.para(plain("Patient over model: of mass, "), bold("M = "+metabolic.FormatRatio(r.Mass)), plain("; of metabolic rate, "), bold("R = "+metabolic.FormatRatio(r.Metabolic)),
-		plain("; of rate per kg, S = R/M, "), bold("S = "+metabolic.FormatRatio(r.Specific)), plain("."))
+	f.para(plain("Patient over model: mass, "), bold("M = "+metabolic.FormatRatio(r.Mass)), plain("; metabolic rate, "), bold("R = "+metabolic.FormatRatio(r.Metabolic)),
+		plain("; rate per kg, "), bold("S = R/M = "+metabolic.FormatRatio(r.Specific)), plain("."))
 	if len(m.Plans) == 0 || ws.Drafted == nil {
 		return
 	}

@@ -144,7 +144,11 @@ func (s *sheet) measureTable() {
 		row(cells...)
 	}
 	for i, n := 0, len(loadingEnds(s.ws)); i < n; i++ {
-		row(one(loadingLead(i, n), &s.ws.Loading.Measured[i], s.ws.Loading.Unit)...)
+		cells := one(loadingLead(i, n), &s.ws.Loading.Measured[i], s.ws.Loading.Unit)
+		if p.Days > 0 {
+			cells[6] = "once, first"
+		}
+		row(cells...)
 	}
 	if len(t.rows) == 0 {
 		return

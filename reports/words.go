@@ -320,6 +320,9 @@ func loadingWords(ws *dose.Worksheet) (order, about string) {
 	order = "Loading dose, once, first: " + amountPair(*l.PerAdministration, l.Unit) + " (" + perKgPair(*l.DosePerKg, l.Unit) + ")"
 	if v := volumeWords(l.Measured); v != "" {
 		order += " = " + v
+		if sites := len(l.Measured[len(l.Measured)-1].Sites); sites > 1 {
+			order += fmt.Sprintf(", divided over %d sites", sites)
+		}
 	}
 	order += "."
 	var parts []string

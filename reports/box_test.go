@@ -76,6 +76,25 @@ func TestBox(t *testing.T) {
 	}
 }
 
+// The box says what the dose was taken from: a model, or a line fitted to data.
+func TestDraftedFrom(t *testing.T) {
+	ws := exampleNamed(t, "anteater")
+	if got := fromWords(ws); got != "From dog, 18 kg: 10 mg/kg SC every 12 hours." {
+		t.Error(got)
+	}
+	ws.Drafted.Route = ""
+	if got := fromWords(ws); !strings.HasSuffix(got, " No route is given.") {
+		t.Error(got)
+	}
+	ws = fittedCase(t, 4)
+	_, paper := paperLines(t, ws)
+	for writer, box := range map[string]string{"terminal": boxOf(t, ws), "paper": paper} {
+		if !strings.Contains(box, "From the line fitted to 4 animals, for an average of 4.8") || !strings.Contains(box, "Model: dog, 10 kg: 10 mg/kg SC every 12 hours.") {
+			t.Errorf("%s: %s", writer, box)
+		}
+	}
+}
+
 // Nothing urges the low end of a bracket where a written reason has set aside
 // that the effect does not follow clearance.
 func TestLowEndNotUrged(t *testing.T) {
@@ -143,6 +162,15 @@ func TestBasisUsed(t *testing.T) {
 	for writer, text := range map[string]string{"terminal": wholeText(ws), "paper": paper} {
 		if !strings.Contains(text, "The dose per kg every 12 hours, at the model's interval, by scaling") || strings.Contains(text, ", basis used") || strings.Contains(text, "basis used, ") {
 			t.Errorf("%s: the bases beside a fitted line", writer)
+		}
+	}
+	// Where the fitted half-life gives another interval, the ranges say theirs.
+	six := 6.0
+	ws.Drafted.IntervalH = &six
+	paper, _ = paperLines(t, ws)
+	for text, want := range map[string]string{wholeText(ws): "by scaling. The ranges are of the drafted dose, every 6 hours.", paper: "the dose from the fitted line, every 6 hours, with its ranges."} {
+		if !strings.Contains(text, want) {
+			t.Errorf("no %q", want)
 		}
 	}
 }

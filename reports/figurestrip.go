@@ -43,9 +43,9 @@ func stripHeight(w *dose.Worksheet) float64 { return 50 + 13.5*float64(len(strip
 
 // stripWords says what the strip shows.
 func stripWords(w *dose.Worksheet) string {
-	s := basesHold(w) + ", under every basis that both animals have and under other exponents"
+	s := basesDose(w) + ", under every basis that both animals have and under other exponents"
 	if fittedDraft(w) {
-		return s + ". Broken line and bars: the dose from the fitted line, with its ranges."
+		return s + ". Broken line and bars: the dose from the fitted line, " + intervalWords("infusion", w.Drafted.IntervalH) + ", with its ranges."
 	}
 	return s + ", with both ranges of the draft."
 }

@@ -57,14 +57,7 @@ func (s *sheet) draftBox() {
 		}
 		s.rangeTable(f)
 		f.para(plain(d.Meaning))
-		if s.from != nil {
-			from := "Drafted from the " + modelWords(s.from) + "."
-			if ws.Fit != nil && d.Plan == string(dose.PlanFitted) {
-				from = "Drafted from the line fitted to " + countWord(float64(ws.Fit.N), "animal") + ", for the average concentration that follows from the " + modelWords(s.from) + ", or that is given."
-			}
-			if d.Route == "" {
-				from += " No route is given."
-			}
+		if from := fromWords(ws); from != "" {
 			f.paragraph(paraStyle{gap: 3}, plain(from))
 		}
 		s.worst(f)

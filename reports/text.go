@@ -172,12 +172,8 @@ func (t *terminal) draftBox(ws *dose.Worksheet) {
 		}
 		t.text(0, s+".")
 	}
-	if m := draftedModel(ws); m != nil {
-		route := ""
-		if d.Route == "" {
-			route = " No route is given."
-		}
-		t.text(0, "From "+modelWords(m)+"."+route)
+	if from := fromWords(ws); from != "" {
+		t.text(0, from)
 	}
 	if l := ws.Loading; l != nil {
 		order, about := loadingWords(ws)

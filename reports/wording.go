@@ -26,7 +26,7 @@ func Wording() map[string]any {
 		"draftedModel": draftedModel, "modelName": modelName, "model": modelWords, "typed": typedWords, "modelTyped": modelTyped,
 		"plan": planWords, "chosen": chosenWords, "average": averageWords,
 		"curveName": curveName, "relation": relationWords,
-		"basis": basisLabel, "basisUsed": basisUsed, "basesHold": basesHold, "verdict": verdictWords, "proposedCautions": proposedCautions, "steps": stepsWords,
+		"basis": basisLabel, "basisUsed": basisUsed, "basesHold": basesHold, "from": fromWords, "verdict": verdictWords, "proposedCautions": proposedCautions, "steps": stepsWords,
 
 		"level": levelWord, "stop": stopWords, "activeStops": activeStops, "overridden": overridden,
 		"countCautions": countWords, "worst": worstWords, "cautionModels": cautionModels, "numbers": numberWords,

@@ -465,6 +465,25 @@ func modelWords(d *dose.ModelDraft) string {
 	return s + ": " + modelRegimen(d)
 }
 
+// fromWords says what the drafted dose was taken from: a model's regimen, or a
+// line fitted to data.
+func fromWords(ws *dose.Worksheet) string {
+	m := draftedModel(ws)
+	if m == nil || ws.Drafted == nil {
+		return ""
+	}
+	s := "From " + modelWords(m) + "."
+	if f := ws.Fit; f != nil && f.Regimen != nil && fittedDraft(ws) {
+		amount, _ := unitOf(m.Unit)
+		s = "From the line fitted to " + countWord(float64(f.N), "animal") + ", for an average of " +
+			metabolic.FormatConcentration(metabolic.Concentration{Value: f.Regimen.Average, Unit: amount}) + " (" + f.Regimen.AverageSource + "). Model: " + modelWords(m) + "."
+	}
+	if ws.Drafted.Route == "" {
+		s += " No route is given."
+	}
+	return s
+}
+
 // draftedModel is the draft that the worksheet's dose was taken from; nil when
 // the record names none.
 func draftedModel(ws *dose.Worksheet) *dose.ModelDraft {
@@ -544,8 +563,19 @@ func fittedDraft(ws *dose.Worksheet) bool {
 	return ws.Drafted != nil && ws.Drafted.Plan == string(dose.PlanFitted)
 }
 
-// basesHold says which dose the lines under other bases hold.
+// basesHold says which dose the lines under other bases hold, and of which dose
+// the ranges beside them are where that is another.
 func basesHold(ws *dose.Worksheet) string {
+	s := basesDose(ws)
+	m, d := draftedModel(ws), ws.Drafted
+	if m != nil && fittedDraft(ws) && m.IntervalH != nil && d.IntervalH != nil && *m.IntervalH != *d.IntervalH {
+		s += ". The ranges are of the drafted dose, " + intervalWords("", d.IntervalH)
+	}
+	return s
+}
+
+// basesDose says which dose the lines under other bases hold.
+func basesDose(ws *dose.Worksheet) string {
 	m, d := draftedModel(ws), ws.Drafted
 	if m == nil || d == nil {
 		return ""
@@ -558,11 +588,7 @@ func basesHold(ws *dose.Worksheet) string {
 	case m.Kind == "infusion":
 		return "The rate per kg"
 	case fittedDraft(ws):
-		s := "The dose per kg " + intervalWords("", m.IntervalH) + ", at the model's interval, by scaling"
-		if m.IntervalH != nil && d.IntervalH != nil && *m.IntervalH != *d.IntervalH {
-			s += "; the ranges are of the drafted dose, " + intervalWords("", d.IntervalH)
-		}
-		return s
+		return "The dose per kg " + intervalWords("", m.IntervalH) + ", at the model's interval, by scaling"
 	}
 	return "The dose per kg " + intervalWords("", d.IntervalH) + ", at the drafted interval"
 }

@@ -117,7 +117,11 @@ func (s *sheet) measureTable() {
 	}
 	for i := range p.Ends {
 		a := &p.Ends[i]
-		cells := one(end(i, len(p.Ends)), a, s.unit)
+		name := end(i, len(p.Ends))
+		if name == "" && len(loadingEnds(s.ws)) > 0 {
+			name = "each dose"
+		}
+		cells := one(name, a, s.unit)
 		if p.Days > 0 && a.Administrations > 0 {
 			cells[6] = countWord(float64(a.Administrations), "dose") + " in " + countWord(p.Days, "day")
 			if a.Total > 0 {

@@ -140,6 +140,7 @@ type Model struct {
 	HasTemperature bool
 	Regimen        Regimen
 	LoadingPerKg   *Pair
+	LoadingPerHead bool // typed per animal: the model's mass divides it
 	Route          string
 	HalfLife       metabolic.Hours // 0: not given
 	VolumePerKg    float64         // L/kg; 0: not given

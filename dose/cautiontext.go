@@ -64,7 +64,7 @@ func (n *numbers) caution(c *Case, r *raised) Caution {
 		*t = "A neonate clears drugs by its maturity, not by its mass: enrofloxacin clearance was 104 mL/h/kg in week-old foals and about 357 in mares."
 		out.Source = "Am J Vet Res 2000;61:706 (read); Haines 2000 (357 computed)"
 	case ClearingOrgan:
-		*t = fmt.Sprintf("The organ that clears the drug is diseased (%s disease, %s elimination): clearance may be far below the one scaled.", r.detail, eliminationName(c.Drug.Elimination))
+		*t = fmt.Sprintf("The organ that clears the drug is diseased (%s disease, %s elimination): clearance may be far below the one scaled.", organWords(r.detail), eliminationName(c.Drug.Elimination))
 	case DepotForm:
 		*t = "A depot or long-acting form: its absorption, not the animal's clearance, sets the interval. No interval is scaled."
 		if r.detail != "" {
@@ -386,6 +386,14 @@ func commonName(scientific string) string {
 		return animalWords(a)
 	}
 	return scientific
+}
+
+// organWords is a diseased organ in plain words.
+func organWords(condition string) string {
+	if condition == "renal" {
+		return "kidney"
+	}
+	return "liver"
 }
 
 // comma sets an aside off, where there is one.

@@ -408,7 +408,7 @@ func (k *checker) model(in *ModelInput, at string, m *Model) {
 		var r Regimen
 		if massOK && m.Animal != nil && k.regimen(in.LoadingDose, in.Interval, at+"loading_dose:", ld, metabolic.Interval{Kind: metabolic.Once}, m.Animal, m.Mass, &r) {
 			p := r.PerKg
-			m.LoadingPerKg = &p
+			m.LoadingPerKg, m.LoadingPerHead = &p, r.PerAnimal
 			if doseOK && r.Unit != m.Regimen.Unit {
 				k.fail(in.LoadingDose, at+"loading_dose", "is in other units than the dose", "write both in mg or both in IU")
 			}

@@ -71,7 +71,9 @@ func compute(c *Case, n *numbers) error {
 			return err
 		}
 	}
-	if len(c.Models) > 1 {
+	// Beside a fitted line there is no summary: one model's plan is then the
+	// line's, which the others' scaled plans are not comparable with.
+	if len(c.Models) > 1 && n.fit == nil {
 		n.several = summarise(c, n)
 	}
 	if err := computeProduct(c, n); err != nil {

@@ -236,6 +236,7 @@ func (n *numbers) judge(c *Case, out *Proposed, daily, draftedDaily float64) {
 	r := c.Proposed
 	f := func(x float64) string { return metabolic.Significant(x, 3) }
 	say := func(format string, args ...any) { out.Verdict = append(out.Verdict, fmt.Sprintf(format, args...)) }
+	sortRaised(n.proposedRaised)
 	for i := range n.proposedRaised {
 		x := n.caution(c, &n.proposedRaised[i])
 		out.RaisesStop = out.RaisesStop || x.Level == Stop

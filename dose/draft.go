@@ -442,6 +442,9 @@ func (n *numbers) disagreement(c *Case, bases []BasisLine) string {
 		})
 		if b.Drafted {
 			used = d + " by " + b.Basis
+			if b.StandIn != "" {
+				used += " (" + b.StandIn + ")"
+			}
 		} else {
 			others = append(others, d+" by "+b.Basis)
 		}
@@ -522,6 +525,9 @@ func (n *numbers) loading(c *Case) *Loading {
 	p := *m.LoadingPerKg
 	l.DosePerKg, l.PerAdministration = &p, pointer(scale(p, float64(c.Patient.Mass.Middle)))
 	sd := volumeSD(c.Patient.Animal, m.Animal)
+	if m.LoadingPerHead {
+		sd = math.Hypot(sd, m.Mass.HalfWidth()/z90)
+	}
 	l.Range90 = pointer(rangeAbout(p, sd, z90))
 	w := &c.Patient.Mass
 	// mg/kg stays, so the amount follows the mass itself.

@@ -33,6 +33,8 @@ type fitNumbers struct {
 	ownSD, ownT90 float64 // of the line's prediction interval
 	byRecord      bool    // the published record is wider
 
+	lineSD, exponent float64 // sd before estimated masses; exponent of the line
+
 	averageFormula, averageNumbers string // of the step
 }
 
@@ -121,8 +123,12 @@ func computeFit(c *Case, n *numbers) error {
 		sd, t90, t50 = recordLines, z90, z50
 		f.byRecord = true
 	}
-	mn.range90, mn.range50 = rangeAbout(p.dose, sd, t90), rangeAbout(p.dose, sd, t50)
-	mn.spread.perKg, mn.spread.amount = sd, sd
+	// An estimated mass moves the fitted amount by W^b and the dose per kg by
+	// W^(b−1).
+	h := c.Patient.Mass.HalfWidth() / z90
+	f.lineSD, f.exponent = sd, line.B
+	mn.spread.perKg, mn.spread.amount = math.Hypot(sd, (line.B-1)*h), math.Hypot(sd, line.B*h)
+	mn.range90, mn.range50 = rangeAbout(p.dose, mn.spread.perKg, t90), rangeAbout(p.dose, mn.spread.perKg, t50)
 	mn.z90, mn.z50 = t90, t50
 	return nil
 }
@@ -226,6 +232,13 @@ func (n *numbers) fitSteps(s *slate, c *Case) {
 	}
 	unit := perKgUnit(&m.Regimen)
 	s.add("Dose per kg", "d' = D / Wt", fmt.Sprintf("%s %s / %s kg", f6(p.dose[1]*w), amount, f6(w)), p.dose[1], unit, "definition")
+	if m := c.Patient.Mass; m.Estimated() {
+		ends := fmt.Sprintf("½·ln(%s / %s)", f6(float64(m.High)), f6(float64(m.Low)))
+		s.add("Standard deviation of ln dose per kg", "√(sd^2 + ((b − 1)·h/1.645)^2), h = ½·ln(high/low)",
+			fmt.Sprintf("√(%s^2 + ((%s − 1) × %s / 1.645)^2)", f6(f.lineSD), f6(f.exponent), ends), mn.spread.perKg, "", f.rangeSource(line))
+		s.add("Standard deviation of ln amount", "√(sd^2 + (b·h/1.645)^2)",
+			fmt.Sprintf("√(%s^2 + (%s × %s / 1.645)^2)", f6(f.lineSD), f6(f.exponent), ends), mn.spread.amount, "", "the amount goes with the patient's mass^b")
+	}
 	for _, e := range []struct {
 		name  string
 		z     float64

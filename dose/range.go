@@ -15,8 +15,8 @@ const (
 	// species carried to another by mass^0.75.
 	recordMammals    = 1.25 // 1.14 over 221 pairs of rat, dog and monkey, raised (see method)
 	recordMan        = 1.41 // man on either side, 361 pairs
-	recordBirds      = 1.46 // bird to bird: 1.22 over 68 pairs of seven drugs, raised to the figure between mammals and birds
-	recordRatite     = 2.70 // an ostrich-like bird on either side, 36 pairs
+	recordBirds      = 1.46 // bird to bird: 1.22 over 34 pairs of seven drugs, raised to the figure between mammals and birds
+	recordRatite     = 2.70 // an ostrich-like bird on either side, 18 pairs
 	recordMammalBird = 1.46 // 30 published predictions (Hunter et al. 2008)
 	recordEctotherms = 1.46 // reptiles and amphibians: assumed
 	recordCrossTherm = 2.0  // ectotherm and endotherm: assumed

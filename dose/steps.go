@@ -51,7 +51,7 @@ func (n *numbers) steps(c *Case, i int) []Step {
 	if n.stopped {
 		return s.steps
 	}
-	doseSteps(s, c, m)
+	doseSteps(s, m)
 	if n.fit != nil && i == n.from {
 		n.fitSteps(s, c)
 		return s.steps
@@ -181,7 +181,7 @@ func relativesLine(r *rate, w metabolic.Mass, t metabolic.Celsius) (slope, at1 f
 }
 
 // doseSteps shows how the model's dose per kg follows from the one typed.
-func doseSteps(s *slate, c *Case, m *Model) {
+func doseSteps(s *slate, m *Model) {
 	r := &m.Regimen
 	unit := perKgUnit(r)
 	amount := r.Unit.String()
@@ -207,7 +207,6 @@ func doseSteps(s *slate, c *Case, m *Model) {
 			fmt.Sprintf("%s %s/m² × %s × (%s g)^(2/3) × 0.0001 m² / %s kg", ends(given), amount, f6(k), f6(m.Mass.Middle.Grams()), f6(float64(m.Mass.Middle))),
 			r.PerKg[1], unit, ends(r.PerKg)+" "+unit, source)
 	}
-	_ = c
 }
 
 // perKgUnit is mg/kg, IU/kg, mg/kg/h or IU/kg/h.
@@ -298,8 +297,7 @@ func (n *numbers) planSteps(s *slate, c *Case, i int) {
 func (n *numbers) rangeSteps(s *slate, c *Case, i int) {
 	mn := &n.models[i]
 	sp := &mn.spread
-	name, text, source := sp.record.text()
-	_ = name
+	_, text, source := sp.record.text()
 	if sp.record.kappa != 1 {
 		text += "; times 0.8 for mammals of one order"
 	}

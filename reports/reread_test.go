@@ -53,7 +53,7 @@ func rebuilt(t interface {
 			if p.flate {
 				raw = packed(changed)
 			}
-			dict = lengthEntry.ReplaceAllString(dict, fmt.Sprintf("/Length %d", len(raw)))
+			dict = lengthEntry().ReplaceAllString(dict, fmt.Sprintf("/Length %d", len(raw)))
 			dict = regexp.MustCompile(`/Size \d+`).ReplaceAllString(dict, fmt.Sprintf("/Size %d", len(changed)))
 			dict = regexp.MustCompile(`/CheckSum <\w*>`).ReplaceAllString(dict, fmt.Sprintf("/CheckSum <%x>", md5.Sum(changed)))
 			p.packed = raw
@@ -79,7 +79,7 @@ func rebuilt(t interface {
 		fmt.Fprintf(&out, "%010d 00000 n \n", at)
 	}
 	out.WriteString("trailer\n")
-	out.Write(startReference.ReplaceAll(trailer, fmt.Appendf(nil, "startxref\n%d\n", xref)))
+	out.Write(startReference().ReplaceAll(trailer, fmt.Appendf(nil, "startxref\n%d\n", xref)))
 	return out.Bytes()
 }
 

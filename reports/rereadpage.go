@@ -9,6 +9,7 @@ import (
 	"regexp"
 	"slices"
 	"strings"
+	"sync"
 )
 
 const attachedPart = "an attached file"
@@ -92,20 +93,20 @@ type streamPart struct {
 }
 
 var (
-	lengthEntry = regexp.MustCompile(`/Length (\d+)`)
-	opening     = regexp.MustCompile(`>>\n\n?stream\n`)
+	lengthEntry = pattern(`/Length (\d+)`)
+	opening     = pattern(`>>\n\n?stream\n`)
 )
 
 // cutStream cuts the next packed part off. Without one, before is all there is.
 func cutStream(b []byte) (streamPart, bool) {
 	const closing = "\nendstream\n"
-	at := opening.FindIndex(b)
+	at := opening().FindIndex(b)
 	if at == nil {
 		return streamPart{before: b}, false
 	}
 	head, rest := b[:at[1]], b[at[1]:]
 	dict := head[max(0, bytes.LastIndex(head, []byte(" obj\n"))):]
-	m := lengthEntry.FindSubmatch(dict)
+	m := lengthEntry().FindSubmatch(dict)
 	if m == nil || len(m[1]) > 9 {
 		return streamPart{before: b}, false
 	}
@@ -156,18 +157,24 @@ func (s *streamPart) unpack(limit int) ([]byte, error) {
 }
 
 var (
-	crossReferences = regexp.MustCompile(`\nxref\n[0-9 \nfn]*trailer\n`)
-	startReference  = regexp.MustCompile(`startxref\n\d+\n`)
-	sumsOfFile      = regexp.MustCompile(`/Params << /CheckSum <[0-9a-f]*> /Size \d+ >>`)
+	crossReferences = pattern(`\nxref\n[0-9 \nfn]*trailer\n`)
+	startReference  = pattern(`startxref\n\d+\n`)
+	sumsOfFile      = pattern(`/Params << /CheckSum <[0-9a-f]*> /Size \d+ >>`)
 )
 
 // withoutSums drops the check sum and the size of an attached file.
-func withoutSums(b []byte) []byte { return sumsOfFile.ReplaceAll(b, nil) }
+func withoutSums(b []byte) []byte { return sumsOfFile().ReplaceAll(b, nil) }
 
 // withoutLengths drops the numbers that follow from how well the parts are
 // packed: their lengths, and the places of the objects behind them.
 func withoutLengths(b []byte) []byte {
-	b = lengthEntry.ReplaceAll(b, []byte("/Length"))
-	b = crossReferences.ReplaceAll(b, []byte("\ntrailer\n"))
-	return startReference.ReplaceAll(b, []byte("startxref\n"))
+	b = lengthEntry().ReplaceAll(b, []byte("/Length"))
+	b = crossReferences().ReplaceAll(b, []byte("\ntrailer\n"))
+	return startReference().ReplaceAll(b, []byte("startxref\n"))
+}
+
+// pattern is a regular expression that is read when it is first used: every
+// command starts this program, and few of them reread.
+func pattern(expr string) func() *regexp.Regexp {
+	return sync.OnceValue(func() *regexp.Regexp { return regexp.MustCompile(expr) })
 }

@@ -18,7 +18,6 @@ import (
 	"errors"
 	"fmt"
 	"io"
-	"regexp"
 	"strconv"
 	"strings"
 	"sync"
@@ -124,7 +123,7 @@ func ReadWorksheetPDF(data []byte) (*Attached, error) {
 }
 
 // contents is how a table of contents begins: plain, or as an object.
-var contents = regexp.MustCompile(`^\s*(xref\s|\d{1,10}\s+\d{1,5}\s+obj\b)`)
+var contents = pattern(`^\s*(xref\s|\d{1,10}\s+\d{1,5}\s+obj\b)`)
 
 // checkEnd looks for the last lines that every whole PDF has, and for the table
 // of contents that they point to.
@@ -137,7 +136,7 @@ func checkEnd(data []byte) error {
 	}
 	at, _, _ := bytes.Cut(tail[i+len("startxref"):], []byte("%%EOF"))
 	offset, err := strconv.Atoi(strings.TrimSpace(string(at)))
-	if err != nil || offset <= 0 || offset >= len(data) || !contents.Match(data[offset:]) {
+	if err != nil || offset <= 0 || offset >= len(data) || !contents().Match(data[offset:]) {
 		return refused(nil, "the file is damaged: its table of contents is not where it says", "copy or send it again")
 	}
 	return nil
@@ -207,12 +206,12 @@ func (m *meter) Read(p []byte) (int, error) {
 	return m.r.Read(p)
 }
 
-var objectHead = regexp.MustCompile(`^\s*\d{1,10}\s+\d{1,5}\s+obj\b`)
+var objectHead = pattern(`^\s*\d{1,10}\s+\d{1,5}\s+obj\b`)
 
 // isShortObject says whether the object that begins here, if one does, ends or
 // comes to its content soon.
 func isShortObject(b []byte) bool {
-	if !objectHead.Match(b[:min(len(b), 64)]) {
+	if !objectHead().Match(b[:min(len(b), 64)]) {
 		return true
 	}
 	b = b[:min(len(b), maxObject)]

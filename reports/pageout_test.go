@@ -209,7 +209,7 @@ func TestRenderErrors(t *testing.T) {
 	}
 }
 
-// What looks like a page number placeholder of the library, or like PDF code,
+// What looks like the mark that the library puts a page number for, or like PDF code,
 // is text like any other.
 func TestTextIsNotCode(t *testing.T) {
 	d := newDocument(A4)
